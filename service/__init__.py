@@ -1,0 +1,1 @@
+"""fillmark: the electron gas of real conductors as a REST service."""

@@ -1,0 +1,1 @@
+"""One file per endpoint: frozen dataclass in, frozen dataclass out, SI units."""

@@ -1,0 +1,1 @@
+"""Catalogues that a non-programmer can read and extend, each entry with its source."""

@@ -1,0 +1,1 @@
+"""How the states of each geometry are filled: at T = 0, at T > 0, exactly and fast."""

@@ -1,0 +1,1 @@
+"""The ladders of levels that confinement makes."""

@@ -1,0 +1,1 @@
+"""Tables for the Fermi-Dirac integrals, and the script that makes them."""

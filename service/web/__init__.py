@@ -1,0 +1,1 @@
+"""HTTP: the only room that knows both the schemas and the calculators."""
