@@ -114,8 +114,9 @@ class States(ABC):
 
     @abstractmethod
     def ladder(self, highest: float, most: int) -> tuple[Ladder, int]:
-        """Return, for one sample, the first `most` levels with edge up to `highest` (at least the lowest), and how
-        many distinct levels lie up to there.
+        """Return, for one sample, the first levels and how many distinct ones lie up to `highest`.
+
+        The ladder holds at most `most` levels, and at least the lowest.
         """
 
     def chemical_potential(self, density: Values, temperature: Values) -> Values:
