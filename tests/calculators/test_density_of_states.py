@@ -4,9 +4,9 @@ import dataclasses
 
 import numpy as np
 import pytest
-from samples import KINDS, WITH_CURVE, batch, sample
 from scipy.integrate import cumulative_simpson
 
+from samples import KINDS, WITH_CURVE, batch, sample
 from service.calculators.curve import DEFAULT_POINTS
 from service.calculators.density_of_states import density_of_states
 from service.calculators.fermi_level import fermi_level

@@ -7,8 +7,8 @@ import numpy as np
 import pytest
 from hypothesis import given, settings
 from hypothesis import strategies as st
-from samples import KINDS, batch, sample
 
+from samples import KINDS, batch, sample
 from service.calculators.fermi_level import UNBOUNDED, fermi_level
 from service.errors import Unsupported
 from service.physics.constants import BOLTZMANN, ELECTRON_MASS, REDUCED_PLANCK

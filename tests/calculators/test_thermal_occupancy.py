@@ -4,9 +4,9 @@ import math
 
 import numpy as np
 import pytest
-from samples import KINDS, WITH_CURVE, batch, sample
 from scipy.integrate import simpson
 
+from samples import KINDS, WITH_CURVE, batch, sample
 from service.calculators.fermi_level import fermi_level
 from service.calculators.thermal_occupancy import thermal_occupancy
 from service.physics.constants import BOLTZMANN
@@ -27,7 +27,7 @@ def test_the_occupied_density_integrates_to_all_carriers(kind):
     one = sample(kind)
     level = fermi_level(one)
     top = max(level.chemical_potential, 0.0) + 45 * BOLTZMANN * 300
-    # Nodes on the subband edges keep Simpson's rule on smooth pieces; the substitution E = E_i + u^2 smooths bulk's root.
+    # Nodes on the subband edges keep the rule on smooth pieces; E = E_i + u^2 smooths the root of bulk.
     edges = thermal_occupancy(one).levels
     starts = [0.0] if edges is None else [*edges.edge.tolist()]
     total = 0.0
