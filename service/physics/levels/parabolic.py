@@ -1,0 +1,37 @@
+"""Levels of a carrier in a parabolic well, in one direction or two."""
+
+import math
+
+import numpy as np
+
+from service.physics.values import FloatArray
+
+
+class ParabolicWell:
+    r"""The levels of a film in a parabolic well.
+
+    .. math:: E_n = \hbar \omega (n + \tfrac12), \quad n = 0, 1, 2, \dots
+
+    Parameters
+    ----------
+    level_spacing : float
+        hbar omega [J].
+
+    References
+    ----------
+    J. H. Davies, The Physics of Low-dimensional Semiconductors (1998), section 4.3.
+    """
+
+    closes = False
+
+    def __init__(self, level_spacing: float) -> None:
+        self._spacing = level_spacing
+        self.lowest = 0.5 * level_spacing
+
+    def count_estimate(self, energy: float) -> float:
+        """Return how many levels there are up to `energy` above the lowest [1]."""
+        return energy / self._spacing + 1.0
+
+    def edges_up_to(self, energy: float) -> FloatArray:
+        """Return the edges up to `energy`, from the lowest level [J]."""
+        return self._spacing * np.arange(max(0, math.floor(energy / self._spacing)) + 1.0)
