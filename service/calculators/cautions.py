@@ -4,7 +4,7 @@ import math
 import tomllib
 from collections.abc import Mapping
 from dataclasses import dataclass
-from functools import cache
+from functools import cache, reduce
 from importlib.resources import files
 from types import MappingProxyType
 from typing import Final
@@ -14,7 +14,7 @@ from numpy.typing import NDArray
 
 from service.calculators.sample import CLASSICAL_BELOW, ElectronGas
 from service.physics.constants import REDUCED_PLANCK, SPEED_OF_LIGHT
-from service.physics.values import Values
+from service.physics.values import Values, smallest
 
 Flags = bool | NDArray[np.bool_]
 """Whether a caution holds, for one sample or for each of many."""
@@ -130,24 +130,11 @@ def _confinement_cautions(gas: ElectronGas, fermi_energy: Values) -> tuple[Cauti
     if not gas.sample.lengths:
         return ()
     wavevector = (6.0 * math.pi**2 * gas.mean_density / (gas.sample.spin_degeneracy * gas.sample.valleys)) ** (1.0 / 3)
-    smallest = _smallest(gas.sample.lengths)
-    spill_out = 0.75 * math.pi > _threshold("wall-spill-out") * wavevector * smallest
+    thinnest = reduce(smallest, gas.sample.lengths.values())
+    spill_out = 0.75 * math.pi > _threshold("wall-spill-out") * wavevector * thinnest
     bulk = (REDUCED_PLANCK * wavevector) ** 2 / (2.0 * gas.mass)
     off = abs(gas.states.lowest_level + fermi_energy - bulk) > _threshold("confinement-matters") * bulk
     return (*_raise_where("wall-spill-out", spill_out), *_raise_where("confinement-matters", off))
-
-
-def _smallest(lengths: Mapping[str, Values]) -> Values:
-    smallest: Values | None = None
-    for length in lengths.values():
-        if smallest is None:
-            smallest = length
-        elif isinstance(length, np.ndarray):
-            smallest = np.minimum(smallest, length)
-        else:
-            smallest = min(smallest, length)
-    assert smallest is not None
-    return smallest
 
 
 def _count_cautions(gas: ElectronGas) -> tuple[Caution, ...]:

@@ -6,7 +6,6 @@ import numpy as np
 from numpy.typing import NDArray
 
 from service.calculators.sample import ElectronGas
-from service.physics.constants import ELECTRON_MASS
 from service.physics.filling.population import level_population
 from service.physics.values import FloatArray
 
@@ -63,28 +62,23 @@ def levels(gas: ElectronGas, fermi_energy: float, chemical_potential: float) -> 
     if gas.is_batch or gas.sample.kind == "bulk":
         return None
     sample, states = gas.sample, gas.states
-    highest = max(fermi_energy, chemical_potential + REACH * gas.thermal_energy, 0.0)
+    density, thermal_energy = float(gas.density), float(gas.thermal_energy)
+    highest = max(fermi_energy, chemical_potential + REACH * thermal_energy, 0.0)
     ladder, total = states.ladder(highest, LEVELS_LISTED)
-    free_mass = ELECTRON_MASS * _geometric_mean(sample.effective_mass[: max(states.free_dimensions, 1)])
     population = level_population(
         ladder,
         states.free_dimensions,
-        free_mass,
-        sample.spin_degeneracy * sample.valleys,
-        gas.density,
+        float(gas.free_mass),
+        float(sample.spin_degeneracy * sample.valleys),
+        density,
         chemical_potential,
-        sample.temperature,
+        float(sample.temperature),
     )
     return Levels(
         quantum_numbers=ladder.quantum_numbers,
-        edge=states.lowest_level + ladder.edge,
+        edge=float(states.lowest_level) + ladder.edge,
         degeneracy=ladder.degeneracy,
         population=population,
-        share=population / gas.density,
+        share=population / density,
         total=total,
     )
-
-
-def _geometric_mean(masses: tuple[float, ...]) -> float:
-    """Return the geometric mean of one or two masses."""
-    return masses[0] if len(masses) == 1 else masses[0] * (masses[1] / masses[0]) ** 0.5

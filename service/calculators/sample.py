@@ -7,7 +7,7 @@ from typing import Any, Final
 import numpy as np
 
 from service.errors import Fault, Unsupported
-from service.physics.bands import Band
+from service.physics.bands import FREE_AXES, Band
 from service.physics.constants import BOLTZMANN, ELECTRON_MASS
 from service.physics.filling.states import States
 from service.physics.geometry import GEOMETRIES, Geometry
@@ -78,6 +78,8 @@ class ElectronGas:
         Carriers per volume; per area in a sheet, per length on a line [m^-3, m^-2, m^-1].
     mass : float or ndarray
         The density-of-states mass over the axes in which carriers move at all [kg].
+    free_mass : float or ndarray
+        The density-of-states mass over the free directions alone [kg].
     thermal_energy : float or ndarray
         kT [J].
     wigner_seitz_ratio : float or ndarray
@@ -91,6 +93,7 @@ class ElectronGas:
     density: Values
     mean_density: Values
     mass: Values
+    free_mass: Values
     thermal_energy: Values
     wigner_seitz_ratio: Values
 
@@ -136,6 +139,7 @@ def electron_gas(sample: Sample) -> ElectronGas:
         density=density,
         mean_density=mean_density,
         mass=mass,
+        free_mass=band.mass(FREE_AXES[geometry.free_dimensions]),
         thermal_energy=BOLTZMANN * sample.temperature,
         wigner_seitz_ratio=wigner_seitz_ratio(mean_dimensions, mean_density, mass, sample.relative_permittivity),
     )

@@ -4,6 +4,7 @@ from dataclasses import dataclass
 from typing import cast
 
 import numpy as np
+from numpy.typing import NDArray
 
 from service.calculators.cautions import Caution, curve_cautions, sample_cautions, step_cautions
 from service.calculators.curve import default_energies, edge_on_grid, mean_over_cells, relative_energies
@@ -117,11 +118,11 @@ def _column(value: Values) -> Values:
 
 
 def _occupied_density(
-    gas: ElectronGas, relative: FloatArray, occupied: FloatArray, on_edge: FloatArray
+    gas: ElectronGas, relative: FloatArray, occupied: FloatArray, on_edge: NDArray[np.bool_]
 ) -> FloatArray | None:
     if gas.states.free_dimensions == 0:
         return None
     density = cast(FloatArray, gas.states.density_of_states(relative))
     if on_edge.any():
         density = np.where(on_edge, mean_over_cells(gas.states, relative, gas), density)
-    return cast(FloatArray, density * occupied / _column(gas.extent))
+    return density * occupied / _column(gas.extent)

@@ -1,8 +1,12 @@
 """The band: effective masses along the axes and the degeneracies of its states."""
 
 from dataclasses import dataclass
+from typing import Final
 
 from service.physics.values import Values
+
+FREE_AXES: Final = ("x", "x", "xy", "xyz")
+"""The free axes by free dimensions: a wire runs along x, a film is thin along z; in a box none is free, x stands in."""
 
 
 @dataclass(frozen=True, slots=True)

@@ -49,16 +49,16 @@ def increasing_root(function: Increasing, low: Values, high: Values, tolerance: 
     >>> round(increasing_root(lambda x: (x * x - 2.0, 2.0 * x), 1.0, 2.0, 1e-15), 12)
     1.414213562373
     """
-    if any(isinstance(value, np.ndarray) for value in (low, high, tolerance)):
-        low, high, tolerance = np.broadcast_arrays(low, high, tolerance)
-        return _roots(function, low.astype(np.float64), high.astype(np.float64), tolerance)
+    if isinstance(low, np.ndarray) or isinstance(high, np.ndarray) or isinstance(tolerance, np.ndarray):
+        lows, highs, tolerances = np.broadcast_arrays(low, high, tolerance)
+        return _roots(function, lows.astype(np.float64), highs.astype(np.float64), tolerances)
     return _root(function, low, high, tolerance)
 
 
 def _root(function: Increasing, low: float, high: float, tolerance: float) -> float:
     point = low
     for _ in range(MOST_STEPS):
-        value, slope = function(point)
+        value, slope = (float(part) for part in function(point))
         if value == 0.0:
             return point
         if value < 0.0:

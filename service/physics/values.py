@@ -4,6 +4,7 @@ A call with floats alone takes a plain-float path (``math``), since a NumPy call
 float operations. A call with an array anywhere takes the vectorised path; the formulas are the same.
 """
 
+import math
 from collections.abc import Callable
 
 import numpy as np
@@ -28,6 +29,18 @@ def largest(first: Values, second: Values) -> Values:
     if isinstance(first, np.ndarray) or isinstance(second, np.ndarray):
         return np.maximum(first, second)
     return max(first, second)
+
+
+def smallest(first: Values, second: Values) -> Values:
+    """Return the smaller of two, for one sample or many."""
+    if isinstance(first, np.ndarray) or isinstance(second, np.ndarray):
+        return np.minimum(first, second)
+    return min(first, second)
+
+
+def logarithm(values: Values) -> Values:
+    """Return the natural logarithm, for one sample or many."""
+    return np.log(values) if isinstance(values, np.ndarray) else math.log(values)
 
 
 def elementwise(function: Callable[[float], float], values: Values) -> Values:

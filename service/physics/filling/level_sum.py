@@ -52,7 +52,7 @@ class LevelSum(States):
         self.free_dimensions = free_dimensions
         self._source = source
         self._half = free_dimensions / 2.0
-        self._per_energy = degeneracy * (free_mass / (2.0 * math.pi * REDUCED_PLANCK**2)) ** self._half
+        self._per_energy = degeneracy * math.pow(free_mass / (2.0 * math.pi * REDUCED_PLANCK**2), self._half)
 
     @property
     def lowest_level(self) -> float:
@@ -81,7 +81,7 @@ class LevelSum(States):
 
     def _alone(self, density: float) -> float:
         """Return the Fermi energy if the lowest level had to hold all carriers: above the true one."""
-        return (density * math.gamma(self._half + 1.0) / self._per_energy) ** (1.0 / self._half)
+        return math.pow(density * math.gamma(self._half + 1.0) / self._per_energy, 1.0 / self._half)
 
     def ground_energy_density(self, density: Values) -> float:
         filled = self.fermi_energy(density)
@@ -111,7 +111,7 @@ class LevelSum(States):
 
     def warm_chemical_potential(self, density: Values, temperature: Values) -> float:
         density, thermal_energy = float(density), BOLTZMANN * float(temperature)
-        room = self._per_energy * thermal_energy**self._half
+        room = self._per_energy * math.pow(thermal_energy, self._half)
         high = thermal_energy * float(inverse_fermi_dirac_integral(self._half - 1.0, density / room))
         edges = self._source.edges_up_to(max(high, 0.0) + REACH * thermal_energy) / thermal_energy
 
@@ -135,7 +135,7 @@ class LevelSum(States):
 
     def _thermal_sum(self, chemical_potential: Values, temperature: Values, order: float) -> Values:
         thermal_energy = BOLTZMANN * float(temperature)
-        room = self._per_energy * thermal_energy**self._half
+        room = self._per_energy * math.pow(thermal_energy, self._half)
         total = self._over_levels(
             chemical_potential,
             lambda above: np.asarray(fermi_dirac_integral(order, above / thermal_energy)),
@@ -149,14 +149,14 @@ class LevelSum(States):
         eta = (potential - edges) / thermal_energy
         population = np.asarray(fermi_dirac_integral(self._half - 1.0, eta))
         kinetic = self._half * thermal_energy * np.asarray(fermi_dirac_integral(self._half, eta))
-        return self._per_energy * thermal_energy**self._half * float(np.sum(edges * population + kinetic))
+        return self._per_energy * math.pow(thermal_energy, self._half) * float(np.sum(edges * population + kinetic))
 
     def carriers_above(self, energy: Values, chemical_potential: Values, temperature: Values) -> float:
         energy, potential, thermal_energy = float(energy), float(chemical_potential), BOLTZMANN * float(temperature)
         edges = self._source.edges_up_to(max(potential, energy, 0.0) + REACH * thermal_energy)
         start = np.maximum(energy - edges, 0.0) / thermal_energy
         tails = fermi_dirac_tail(self._half - 1.0, (potential - edges) / thermal_energy, start)
-        return self._per_energy * thermal_energy**self._half * float(np.sum(tails))
+        return self._per_energy * math.pow(thermal_energy, self._half) * float(np.sum(tails))
 
     def spread_states(self, energy: Values, broadening: Broadening) -> tuple[Values, Values]:
         width = float(broadening.width)

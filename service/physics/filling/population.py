@@ -60,7 +60,7 @@ def level_population(
         per_state = (wavevector_squared / (4.0 * math.pi)) ** (free_dimensions / 2.0)
         return capacity * per_state / math.gamma(free_dimensions / 2.0 + 1.0)
     thermal_energy = BOLTZMANN * temperature
-    wavevector_squared = free_mass * thermal_energy / (2.0 * math.pi * REDUCED_PLANCK**2)
+    inverse_area = free_mass * thermal_energy / (2.0 * math.pi * REDUCED_PLANCK**2)
     integral = fermi_dirac_integral(free_dimensions / 2.0 - 1.0, (chemical_potential - ladder.edge) / thermal_energy)
-    populations: FloatArray = capacity * wavevector_squared ** (free_dimensions / 2.0) * integral
+    populations: FloatArray = capacity * inverse_area ** (free_dimensions / 2.0) * integral
     return populations

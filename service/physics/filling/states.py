@@ -48,7 +48,7 @@ class States(ABC):
 
     free_dimensions: int
     method: str
-    relative_error_bound: float
+    relative_error_bound: Values
     """Bound on the error of the chemical potential over max(|mu|, kT), mu from the band edge."""
 
     @property
@@ -59,6 +59,10 @@ class States(ABC):
     @abstractmethod
     def take(self, rows: NDArray[np.intp] | NDArray[np.bool_]) -> Self:
         """Return the states of some of N samples."""
+
+    def work(self, density: Values, temperature: Values) -> Values:
+        """Return about how many levels a solve adds up, before any is listed; 0 where it is in closed form [1]."""
+        return 0.0
 
     @abstractmethod
     def fermi_energy(self, density: Values) -> Values:

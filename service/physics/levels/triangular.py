@@ -40,12 +40,12 @@ class TriangularWell:
 
     def count_estimate(self, energy: float) -> float:
         """Return how many levels there are up to `energy` above the lowest, to within one [1]."""
-        return 2.0 / (3.0 * math.pi) * ((self.lowest + energy) / self._scale) ** 1.5 + 1.25
+        return 2.0 / (3.0 * math.pi) * math.pow((self.lowest + energy) / self._scale, 1.5) + 1.25
 
     def edges_up_to(self, energy: float) -> FloatArray:
         """Return the edges up to `energy`, from the lowest level [J]."""
         zeros = airy_zeros(int(self.count_estimate(energy)) + 1)
-        edges = self._scale * (zeros - zeros[0])
+        edges: FloatArray = self._scale * (zeros - zeros[0])
         return edges[: max(1, int(np.searchsorted(edges, energy, side="right")))]
 
 
