@@ -6,7 +6,8 @@ from typing import Any, cast
 import numpy as np
 
 from service.calculators.cautions import Caution, curve_cautions, sample_cautions
-from service.calculators.curve import default_energies, edge_on_grid, mean_over_cells, relative_energies
+from service.calculators.cost import refuse_enormous
+from service.calculators.curve import DEFAULT_POINTS, default_energies, edge_on_grid, mean_over_cells, relative_energies
 from service.calculators.ladder import Levels, levels
 from service.calculators.sample import ElectronGas, Sample, electron_gas
 from service.errors import Fault, SampleError
@@ -72,6 +73,7 @@ def density_of_states(
         Where the states are lines that nothing broadens, or the sample has no answer.
     """
     gas = electron_gas(sample)
+    refuse_enormous(gas, DEFAULT_POINTS if energies is None else energies.size)
     states = gas.states
     shape = line_shape(gas, broadening)
     lowest = gas.per_sample(states.lowest_level)

@@ -7,6 +7,7 @@ from typing import Final
 import numpy as np
 
 from service.calculators.cautions import Caution, fermi_level_cautions
+from service.calculators.cost import refuse_enormous
 from service.calculators.sample import CLASSICAL_BELOW, DEGENERATE_ABOVE, Sample, electron_gas
 from service.physics.constants import BOLTZMANN, REDUCED_PLANCK
 from service.physics.values import Values
@@ -74,9 +75,10 @@ def fermi_level(sample: Sample) -> FermiLevel:
     Raises
     ------
     SampleError
-        Where the sample, as stated, has no answer.
+        Where the sample, as stated, has no answer, or would cost too much.
     """
     gas = electron_gas(sample)
+    refuse_enormous(gas)
     states, density = gas.states, gas.density
     lowest = gas.per_sample(states.lowest_level)
     fermi_energy = states.fermi_energy(density)

@@ -7,7 +7,8 @@ import numpy as np
 from numpy.typing import NDArray
 
 from service.calculators.cautions import Caution, curve_cautions, sample_cautions, step_cautions
-from service.calculators.curve import default_energies, edge_on_grid, mean_over_cells, relative_energies
+from service.calculators.cost import refuse_enormous
+from service.calculators.curve import DEFAULT_POINTS, default_energies, edge_on_grid, mean_over_cells, relative_energies
 from service.calculators.ladder import Levels, levels
 from service.calculators.sample import ElectronGas, Sample, electron_gas
 from service.physics.occupancy import occupation, thermal_broadening, transition_width
@@ -75,9 +76,10 @@ def thermal_occupancy(sample: Sample, energies: FloatArray | None = None) -> The
     Raises
     ------
     SampleError
-        Where the sample, as stated, has no answer.
+        Where the sample, as stated, has no answer, or would cost too much.
     """
     gas = electron_gas(sample)
+    refuse_enormous(gas, DEFAULT_POINTS if energies is None else energies.size)
     states = gas.states
     lowest = gas.per_sample(states.lowest_level)
     fermi_energy = states.fermi_energy(gas.density)

@@ -1,1 +1,4 @@
 """Tables for the Fermi-Dirac integrals, and the script that makes them."""
+
+FERMI_DIRAC_CHECKSUM = "7606787994d13c1ed9cee1d19f4e6b2de018a0dc509e6d376cf3886433feeefd"
+"""SHA-256 of the names and bytes of the arrays in ``fermi_dirac.npz``, as ``make_fermi_dirac`` prints it."""

@@ -1,0 +1,196 @@
+r"""Complete Fermi-Dirac integrals of the orders that one, two and three dimensions need.
+
+.. math:: F_j(\eta) = \frac{1}{\Gamma(j+1)} \int_0^\infty \frac{t^j\, dt}{1 + e^{t - \eta}}, \qquad F_j' = F_{j-1}
+"""
+
+import math
+from functools import cache
+from importlib.resources import files
+from typing import Final
+
+import numpy as np
+
+from service.physics.values import FloatArray, Values
+
+LOW: Final = -40.0
+HIGH: Final = 40.0
+_CELLS_PER_UNIT: Final = 32
+_CHUNK: Final = 1 << 14
+"""Elements at a time, so that a chunk's buffers stay in the second-level cache."""
+
+TABULATED: Final = (-1.5, -0.5, 0.5, 1.0, 1.5, 2.0, 2.5)
+ORDERS: Final = (-2.0, -1.5, -1.0, -0.5, 0.0, 0.5, 1.0, 1.5, 2.0, 2.5)
+"""The orders on offer: three dimensions need 5/2 to -3/2, two need 2 to -2, one needs 3/2 to -3/2."""
+
+
+@cache
+def table(name: str) -> FloatArray:
+    """Return one array of the file of tables, read-only, so that forked workers share it."""
+    with files("service.physics.tables").joinpath("fermi_dirac.npz").open("rb") as opened, np.load(opened) as arrays:
+        loaded = np.ascontiguousarray(arrays[name])
+    loaded.flags.writeable = False
+    return loaded
+
+
+def fermi_dirac_integral(order: float, eta: Values) -> Values:
+    r"""Return the complete Fermi-Dirac integral of an order, divided by Gamma(j + 1).
+
+    .. math::
+
+        F_j(\eta) = \frac{1}{\Gamma(j+1)} \int_0^\infty \frac{t^j\, dt}{1 + e^{t - \eta}}
+        = -\mathrm{Li}_{j+1}(-e^\eta)
+
+    Parameters
+    ----------
+    order : float
+        j, one of -2, -3/2, ..., 5/2 [1].
+    eta : float or ndarray
+        Reduced chemical potential mu / kT, of any shape [1].
+
+    Returns
+    -------
+    float or ndarray
+        F_j(eta), of the same shape [1].
+
+    Raises
+    ------
+    ValueError
+        If the order is not on offer.
+
+    Notes
+    -----
+    Whole orders up to zero in closed form. Others by a polynomial of degree 6 in each of 32 cells a unit of eta from
+    -40 to 40, by exp(eta) below and by Sommerfeld's series above. Against ball arithmetic of 60 digits the relative
+    error is at most 1e-15 from eta = -700 to 1e8 (tests/physics/fermi_dirac/test_complete.py).
+
+    References
+    ----------
+    NIST DLMF 25.12.14 to 25.12.16; A. Sommerfeld, Z. Phys. 47, 1 (1928).
+
+    Examples
+    --------
+    >>> round(fermi_dirac_integral(0.5, 0.0), 12)
+    0.765147024625
+    """
+    if isinstance(eta, np.ndarray):
+        return _integral_of_many(order, eta)
+    return _integral_of_one(order, float(eta))
+
+
+def _integral_of_one(order: float, eta: float) -> float:
+    if order == 0.0:
+        return max(eta, 0.0) + math.log1p(math.exp(-abs(eta)))
+    if order in (-1.0, -2.0):
+        decay = math.exp(-abs(eta))
+        filled = (1.0 if eta >= 0.0 else decay) / (1.0 + decay)
+        return filled if order == -1.0 else decay / (1.0 + decay) ** 2
+    if eta < LOW:
+        return math.exp(eta) if eta > -745.0 else 0.0
+    if eta >= HIGH:
+        return _series_of_one(order, eta)
+    cell = int((eta - LOW) * _CELLS_PER_UNIT)
+    offset = eta - ((cell + 0.5) / _CELLS_PER_UNIT + LOW)
+    a, b, c, d, e, f, g = _cells(order)[cell]
+    return (((((a * offset + b) * offset + c) * offset + d) * offset + e) * offset + f) * offset + g
+
+
+@cache
+def _cells(order: float) -> list[tuple[float, ...]]:
+    """Return the polynomials of an order cell by cell, as Python floats for the path of one sample."""
+    return [tuple(cell) for cell in _table_of(order).T.tolist()]
+
+
+def _table_of(order: float) -> FloatArray:
+    if order not in TABULATED:
+        raise ValueError(f"no Fermi-Dirac integral of order {order}; on offer: {ORDERS}")
+    return table(f"integral_{round(2 * order)}")
+
+
+@cache
+def _series(order: float) -> tuple[float, tuple[float, ...]]:
+    """Return Gamma(j + 2) and the terms of Sommerfeld's series, the highest first."""
+    if order not in TABULATED:
+        raise ValueError(f"no Fermi-Dirac integral of order {order}; on offer: {ORDERS}")
+    return math.gamma(order + 2.0), tuple(table(f"series_{round(2 * order)}").tolist()[::-1])
+
+
+def _series_of_one(order: float, eta: float) -> float:
+    gamma, terms = _series(order)
+    inverse_square = 1.0 / (eta * eta)
+    total = 0.0
+    for term in terms:
+        total = (total + term) * inverse_square
+    return _power_of_one(eta, order + 1.0) * (1.0 + total) / gamma
+
+
+def _power_of_one(eta: float, exponent: float) -> float:
+    """Return a whole or half power by products and a square root, which round less than a general power."""
+    whole = math.floor(exponent)
+    result = eta**whole if whole >= 0 else 1.0 / eta**-whole
+    return result if whole == exponent else result * math.sqrt(eta)
+
+
+def _integral_of_many(order: float, eta: FloatArray) -> FloatArray:
+    if order == 0.0:
+        return np.asarray(np.maximum(eta, 0.0) + np.log1p(np.exp(-np.abs(eta))))
+    if order in (-1.0, -2.0):
+        decay = np.exp(-np.abs(eta))
+        filled = np.where(eta >= 0.0, 1.0, decay) / (1.0 + decay)
+        return filled if order == -1.0 else decay / (1.0 + decay) ** 2
+    polynomials = _table_of(order)
+    flat = np.ascontiguousarray(eta, dtype=np.float64).ravel()
+    result = np.empty_like(flat)
+    for start in range(0, flat.size, _CHUNK):
+        part = flat[start : start + _CHUNK]
+        _tabulated(order, polynomials, part, result[start : start + _CHUNK])
+    return result.reshape(eta.shape)
+
+
+def _tabulated(order: float, polynomials: FloatArray, eta: FloatArray, result: FloatArray) -> None:
+    """Fill `result` with one chunk's integrals: the table for all, then the two ends where there are any."""
+    lowest, highest = eta.min(), eta.max()
+    inside = eta if LOW <= lowest and highest < HIGH else np.clip(eta, LOW, HIGH - 1e-9)
+    cell = ((inside - LOW) * _CELLS_PER_UNIT).astype(np.intp)
+    # The centre is formed exactly and then subtracted: the other order costs 4e-15.
+    offset = inside - ((cell + 0.5) / _CELLS_PER_UNIT + LOW)
+    horner(polynomials, cell, offset, result)
+    if lowest < LOW:
+        below = eta < LOW
+        result[below] = np.exp(eta[below])
+    if highest >= HIGH:
+        above = eta >= HIGH
+        result[above] = _series_of_many(order, eta[above])
+
+
+def horner(polynomials: FloatArray, cell: np.ndarray, offset: FloatArray, result: FloatArray) -> None:
+    """Fill `result` with each element's own polynomial, the coefficients gathered power by power."""
+    np.take(polynomials[0], cell, out=result, mode="clip")
+    gathered = np.empty_like(result)
+    for row in polynomials[1:]:
+        result *= offset
+        np.take(row, cell, out=gathered, mode="clip")
+        result += gathered
+
+
+def _series_of_many(order: float, eta: FloatArray) -> FloatArray:
+    gamma, terms = _series(order)
+    inverse_square = 1.0 / (eta * eta)
+    total = np.zeros_like(eta)
+    for term in terms:
+        total += term
+        total *= inverse_square
+    total += 1.0
+    total *= half_power(eta, order + 1.0)
+    total /= gamma
+    return total
+
+
+def half_power(eta: FloatArray, exponent: float) -> FloatArray:
+    """Return a whole or half power by products and a square root, which round less than a general power."""
+    whole = math.floor(exponent)
+    result = np.ones_like(eta)
+    for _ in range(abs(whole)):
+        result *= eta
+    if whole < 0:
+        result = 1.0 / result
+    return result if whole == exponent else result * np.sqrt(eta)
