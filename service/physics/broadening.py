@@ -1,8 +1,24 @@
-"""Broadening of a level: line shapes, and what they make of a free gas of one, two or three dimensions."""
+r"""Broadening of a level: line shapes, and what they make of a free gas of no, one, two or three dimensions.
 
+A level's own density of states is the power law t^(D/2-1) / Gamma(D/2) of the energy t above its edge; in no
+dimension it is a line. Convolved with a line shape of unit width it is known in closed form, or by a table.
+"""
+
+import math
+from collections.abc import Callable
 from dataclasses import dataclass
+from typing import Final
 
-from service.physics.values import Values
+import numpy as np
+
+from service.physics.fermi_dirac import fermi_dirac_integral
+from service.physics.tabulated import horner, table
+from service.physics.values import FloatArray, Values
+
+_GAUSSIAN_REACH: Final = 10.0
+_GAUSSIAN_CELLS_PER_UNIT: Final = 32
+_GAUSSIAN_TERMS: Final = 20
+_FILE: Final = "gaussian.npz"
 
 
 @dataclass(frozen=True, slots=True)
@@ -20,3 +36,132 @@ class Broadening:
 
     kind: str
     width: Values
+
+
+def spread_level(dimensions: int, kind: str, energy: Values, start: Values = 0.0) -> tuple[Values, Values]:
+    r"""Return a level's density of states convolved with a line shape of unit width, and its integral.
+
+    .. math::
+
+        s(x) = \frac{1}{\Gamma(D/2)} \int_0^\infty t^{D/2-1} K(x - t)\, dt, \qquad S(x) = \int^x s(y)\, dy
+
+    Parameters
+    ----------
+    dimensions : int
+        D: 0 for a line, 1, 2 or 3 for a free gas [1].
+    kind : str
+        ``gaussian``, ``lorentzian`` or ``thermal`` [1].
+    energy : float or ndarray
+        x, the energy above the level's edge over the width [1].
+    start : float or ndarray
+        Where the integral of a Lorentzian begins, of a shape that broadcasts: for D > 0 its tail has no finite
+        integral from below. The others, and a Lorentzian for D = 0, are integrated from below all states [1].
+
+    Returns
+    -------
+    tuple of float or ndarray
+        s and S, each of the shape of `energy` [1].
+
+    Notes
+    -----
+    thermal: Fermi-Dirac integrals. lorentzian: real parts of powers of x + i, in real arithmetic. gaussian: parabolic
+    cylinder functions, by tables of polynomials from -10 to 10 and the asymptotic series beyond. Each keeps its
+    relative precision in the tail below the edge; the error is below 1e-14 against mpmath.
+
+    References
+    ----------
+    NIST DLMF 25.12.16, 12.5.1, 12.7 and 12.9.
+
+    Examples
+    --------
+    >>> spread_level(2, "lorentzian", 0.0)
+    (0.5, 0.0)
+    """
+    many = isinstance(energy, np.ndarray) or isinstance(start, np.ndarray)
+    x = np.atleast_1d(np.asarray(energy, dtype=np.float64))
+    density, integral = _SHAPES[kind](dimensions, x, np.asarray(start, dtype=np.float64))
+    if many:
+        return density, integral
+    return float(density[0]), float(integral[0])
+
+
+def _thermal(dimensions: int, x: FloatArray, start: FloatArray) -> tuple[FloatArray, FloatArray]:
+    half = dimensions / 2.0
+    return np.asarray(fermi_dirac_integral(half - 2.0, x)), np.asarray(fermi_dirac_integral(half - 1.0, x))
+
+
+def _lorentzian(dimensions: int, x: FloatArray, start: FloatArray) -> tuple[FloatArray, FloatArray]:
+    if dimensions == 0:
+        return 1.0 / (math.pi * (1.0 + x * x)), _arc(x)
+    if dimensions == 2:
+        return _arc(x), _lorentzian_sheet(x) - _lorentzian_sheet(start)
+    real, imaginary = _root(x)
+    if dimensions == 1:
+        density = real / np.hypot(x, 1.0) / math.gamma(0.5)
+        return density, (real - _root(start)[0]) / math.gamma(1.5)
+    start_real, start_imaginary = _root(start)
+    integral = (x * real - imaginary) - (start * start_real - start_imaginary)
+    return real / math.gamma(1.5), integral / math.gamma(2.5)
+
+
+def _arc(x: FloatArray) -> FloatArray:
+    """Return 1/2 + atan(x)/pi without the cancellation far below the edge."""
+    return np.asarray(np.arctan2(1.0, -x) / math.pi)
+
+
+def _lorentzian_sheet(x: FloatArray) -> FloatArray:
+    return np.asarray(x * _arc(x) - np.log(np.hypot(x, 1.0)) / math.pi)
+
+
+def _root(x: FloatArray) -> tuple[FloatArray, FloatArray]:
+    """Return real and imaginary part of the square root of x + i, the smaller one from the larger."""
+    larger = np.sqrt(0.5 * (np.hypot(x, 1.0) + np.abs(x)))
+    smaller = 0.5 / larger
+    above = x >= 0.0
+    return np.where(above, larger, smaller), np.where(above, smaller, larger)
+
+
+def _gaussian(dimensions: int, x: FloatArray, start: FloatArray) -> tuple[FloatArray, FloatArray]:
+    if dimensions == 0:
+        return _bell(x), _smeared_power(2, x)
+    return _smeared_power(dimensions, x), _smeared_power(dimensions + 2, x)
+
+
+def _bell(x: FloatArray) -> FloatArray:
+    """Return the Gaussian of unit standard deviation."""
+    return np.asarray(np.exp(-0.5 * x * x) / math.sqrt(2.0 * math.pi))
+
+
+def _smeared_power(double_power: int, x: FloatArray) -> FloatArray:
+    """Return t^(nu-1) / Gamma(nu), 2 nu = `double_power`, convolved with the Gaussian of unit standard deviation."""
+    depth = np.abs(x)
+    above = x >= 0.0
+    cell = np.minimum(depth * _GAUSSIAN_CELLS_PER_UNIT, _GAUSSIAN_REACH * _GAUSSIAN_CELLS_PER_UNIT - 1.0)
+    cell = cell.astype(np.intp)
+    offset = np.minimum(depth, _GAUSSIAN_REACH) - (cell + 0.5) / _GAUSSIAN_CELLS_PER_UNIT
+    result = np.empty_like(depth)
+    horner(table(_FILE, f"above_{double_power}"), cell, offset, result)
+    tail = np.empty_like(depth)
+    horner(table(_FILE, f"below_{double_power}"), cell, offset, tail)
+    far = depth > _GAUSSIAN_REACH
+    if far.any():
+        beyond = depth[far]
+        result[far] = _series(1.0 - double_power / 2.0, beyond, 1.0) * beyond ** (double_power / 2.0 - 1.0)
+        result[far] /= math.gamma(double_power / 2.0)
+        tail[far] = _series(double_power / 2.0, beyond, -1.0) * beyond ** (-double_power / 2.0)
+    return np.where(above, result, tail * _bell(x))
+
+
+def _series(first: float, depth: FloatArray, sign: float) -> FloatArray:
+    """Return the sum of (first)_2k (sign / 2 x^2)^k / k!, the asymptotic factor of a smeared power (DLMF 12.9)."""
+    ratio = sign / (2.0 * depth * depth)
+    term = np.ones_like(depth)
+    total = np.ones_like(depth)
+    for k in range(_GAUSSIAN_TERMS):
+        term = term * ratio * ((first + 2.0 * k) * (first + 2.0 * k + 1.0) / (k + 1.0))
+        total = total + term
+    return total
+
+
+_Shape = Callable[[int, FloatArray, FloatArray], tuple[FloatArray, FloatArray]]
+_SHAPES: Final[dict[str, _Shape]] = {"thermal": _thermal, "lorentzian": _lorentzian, "gaussian": _gaussian}

@@ -5,13 +5,14 @@ r"""Complete Fermi-Dirac integrals of the orders that one, two and three dimensi
 
 import math
 from functools import cache
-from importlib.resources import files
 from typing import Final
 
 import numpy as np
 
+from service.physics.tabulated import cells, horner, table
 from service.physics.values import FloatArray, Values
 
+FILE: Final = "fermi_dirac.npz"
 LOW: Final = -40.0
 HIGH: Final = 40.0
 _CELLS_PER_UNIT: Final = 32
@@ -21,15 +22,6 @@ _CHUNK: Final = 1 << 14
 TABULATED: Final = (-1.5, -0.5, 0.5, 1.0, 1.5, 2.0, 2.5)
 ORDERS: Final = (-2.0, -1.5, -1.0, -0.5, 0.0, 0.5, 1.0, 1.5, 2.0, 2.5)
 """The orders on offer: three dimensions need 5/2 to -3/2, two need 2 to -2, one needs 3/2 to -3/2."""
-
-
-@cache
-def table(name: str) -> FloatArray:
-    """Return one array of the file of tables, read-only, so that forked workers share it."""
-    with files("service.physics.tables").joinpath("fermi_dirac.npz").open("rb") as opened, np.load(opened) as arrays:
-        loaded = np.ascontiguousarray(arrays[name])
-    loaded.flags.writeable = False
-    return loaded
 
 
 def fermi_dirac_integral(order: float, eta: Values) -> Values:
@@ -90,28 +82,22 @@ def _integral_of_one(order: float, eta: float) -> float:
         return _series_of_one(order, eta)
     cell = int((eta - LOW) * _CELLS_PER_UNIT)
     offset = eta - ((cell + 0.5) / _CELLS_PER_UNIT + LOW)
-    a, b, c, d, e, f, g = _cells(order)[cell]
+    a, b, c, d, e, f, g = cells(FILE, _name_of(order))[cell]
     return (((((a * offset + b) * offset + c) * offset + d) * offset + e) * offset + f) * offset + g
 
 
 @cache
-def _cells(order: float) -> list[tuple[float, ...]]:
-    """Return the polynomials of an order cell by cell, as Python floats for the path of one sample."""
-    return [tuple(cell) for cell in _table_of(order).T.tolist()]
-
-
-def _table_of(order: float) -> FloatArray:
+def _name_of(order: float) -> str:
     if order not in TABULATED:
         raise ValueError(f"no Fermi-Dirac integral of order {order}; on offer: {ORDERS}")
-    return table(f"integral_{round(2 * order)}")
+    return f"integral_{round(2 * order)}"
 
 
 @cache
 def _series(order: float) -> tuple[float, tuple[float, ...]]:
     """Return Gamma(j + 2) and the terms of Sommerfeld's series, the highest first."""
-    if order not in TABULATED:
-        raise ValueError(f"no Fermi-Dirac integral of order {order}; on offer: {ORDERS}")
-    return math.gamma(order + 2.0), tuple(table(f"series_{round(2 * order)}").tolist()[::-1])
+    terms = table(FILE, _name_of(order).replace("integral", "series"))
+    return math.gamma(order + 2.0), tuple(terms.tolist()[::-1])
 
 
 def _series_of_one(order: float, eta: float) -> float:
@@ -137,7 +123,7 @@ def _integral_of_many(order: float, eta: FloatArray) -> FloatArray:
         decay = np.exp(-np.abs(eta))
         filled = np.where(eta >= 0.0, 1.0, decay) / (1.0 + decay)
         return filled if order == -1.0 else decay / (1.0 + decay) ** 2
-    polynomials = _table_of(order)
+    polynomials = table(FILE, _name_of(order))
     flat = np.ascontiguousarray(eta, dtype=np.float64).ravel()
     result = np.empty_like(flat)
     for start in range(0, flat.size, _CHUNK):
@@ -160,16 +146,6 @@ def _tabulated(order: float, polynomials: FloatArray, eta: FloatArray, result: F
     if highest >= HIGH:
         above = eta >= HIGH
         result[above] = _series_of_many(order, eta[above])
-
-
-def horner(polynomials: FloatArray, cell: np.ndarray, offset: FloatArray, result: FloatArray) -> None:
-    """Fill `result` with each element's own polynomial, the coefficients gathered power by power."""
-    np.take(polynomials[0], cell, out=result, mode="clip")
-    gathered = np.empty_like(result)
-    for row in polynomials[1:]:
-        result *= offset
-        np.take(row, cell, out=gathered, mode="clip")
-        result += gathered
 
 
 def _series_of_many(order: float, eta: FloatArray) -> FloatArray:

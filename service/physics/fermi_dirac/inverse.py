@@ -6,10 +6,12 @@ from typing import Any, Final
 
 import numpy as np
 
-from service.physics.fermi_dirac.complete import horner, table
+from service.physics.fermi_dirac.complete import FILE
+from service.physics.tabulated import cells, horner, table
 from service.physics.values import FloatArray, Values
 
 ORDERS: Final = (-0.5, 0.0, 0.5)
+_NAMES: Final = {-0.5: "inverse_-1", 0.5: "inverse_1"}
 _CELLS_PER_OCTAVE: Final = 64
 _CELL_BITS: Final = 6
 _SIGNIFICAND_BITS: Final = 52
@@ -78,20 +80,16 @@ def _inverse_of_one(order: float, value: float) -> float:
     significand *= 2.0
     part = int((significand - 1.0) * _CELLS_PER_OCTAVE)
     offset = significand - (1.0 + (part + 0.5) / _CELLS_PER_OCTAVE)
-    a, b, c, d, e, f, g = _cells(order)[octave * _CELLS_PER_OCTAVE + part]
+    a, b, c, d, e, f, g = cells(FILE, _NAMES[order])[octave * _CELLS_PER_OCTAVE + part]
     return (((((a * offset + b) * offset + c) * offset + d) * offset + e) * offset + f) * offset + g
-
-
-@cache
-def _cells(order: float) -> list[tuple[float, ...]]:
-    """Return the polynomials cell by cell, as Python floats for the path of one sample."""
-    return [tuple(cell) for cell in table(f"inverse_{round(2 * order)}").T.tolist()]
 
 
 @cache
 def _series(order: float) -> tuple[float, tuple[float, ...]]:
     """Return Gamma(j + 2) and the terms of the reverted series, the highest first."""
-    return math.gamma(order + 2.0), tuple(table(f"inverse_series_{round(2 * order)}").tolist()[::-1])
+    return math.gamma(order + 2.0), tuple(
+        table(FILE, _NAMES[order].replace("inverse", "inverse_series")).tolist()[::-1]
+    )
 
 
 def _degenerate_of_one(order: float, value: float) -> float:
@@ -124,7 +122,7 @@ def _inverse_of_many(order: float, value: FloatArray) -> FloatArray:
 
 def _tabulated(order: float, value: FloatArray, result: FloatArray) -> None:
     """Fill `result` with one chunk's inverses: the table for all, then the two ends where there are any."""
-    polynomials = table(f"inverse_{round(2 * order)}")
+    polynomials = table(FILE, _NAMES[order])
     bits = value.view(np.int64)
     cell = (bits >> (_SIGNIFICAND_BITS - _CELL_BITS)) - ((_ONE + _FIRST_OCTAVE) << _CELL_BITS)
     significand = ((bits & ((1 << _SIGNIFICAND_BITS) - 1)) | (_ONE << _SIGNIFICAND_BITS)).view(np.float64)

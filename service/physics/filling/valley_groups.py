@@ -1,6 +1,6 @@
 """Groups of valleys with their own masses and ladders, filled to one common level."""
 
-from collections.abc import Callable, Sequence
+from collections.abc import Callable, Iterator, Sequence
 from functools import reduce
 from typing import Self
 
@@ -58,7 +58,7 @@ class ValleyGroups(States):
         ]
         return [part / density for part in held]
 
-    def _with_offsets(self) -> zip[tuple[States, Values]]:
+    def _with_offsets(self) -> Iterator[tuple[States, Values]]:
         return zip(self._groups, self._offsets, strict=True)
 
     def _total(self, part: Callable[[States, Values], Values]) -> Values:

@@ -1,0 +1,103 @@
+"""Line shapes: each dimension and shape against mpmath, their integrals against their densities, and their limits."""
+
+import hashlib
+import math
+from importlib.resources import files
+
+import mpmath
+import numpy as np
+import pytest
+from hypothesis import given
+from hypothesis import strategies as st
+
+from service.physics.broadening import spread_level
+from service.physics.tables import GAUSSIAN_CHECKSUM
+
+# The bound that the module states.
+STATED = 1e-14
+POINTS = [-37.0, -12.5, -10.01, -9.99, -3.3, -1.0, -1e-3, 0.0, 0.7, 3.0, 9.99, 10.01, 30.0]
+
+
+def smeared_power(power, x):
+    """Return t^(nu-1)/Gamma(nu) convolved with a Gaussian: exp(-x^2/4) D_-nu(-x) / sqrt(2 pi), NIST DLMF 12.5.1."""
+    x = mpmath.mpf(x)
+    return mpmath.exp(-x * x / 4) * mpmath.pcfd(-mpmath.mpf(power), -x) / mpmath.sqrt(2 * mpmath.pi)
+
+
+@pytest.mark.parametrize("dimensions", [1, 2, 3])
+@pytest.mark.parametrize("x", POINTS)
+def test_a_gaussian_is_a_parabolic_cylinder_function(dimensions, x):
+    with mpmath.workdps(30):
+        expected = [float(smeared_power(dimensions / 2, x)), float(smeared_power(dimensions / 2 + 1, x))]
+    assert spread_level(dimensions, "gaussian", x) == pytest.approx(expected, rel=STATED)
+
+
+def test_a_gaussian_line_is_a_bell_and_its_integral_the_error_function():
+    for x in POINTS:
+        with mpmath.workdps(30):
+            expected = [float(mpmath.npdf(x)), float(mpmath.ncdf(x))]
+        assert spread_level(0, "gaussian", x) == pytest.approx(expected, rel=STATED)
+
+
+@pytest.mark.parametrize("dimensions", [1, 2, 3])
+@pytest.mark.parametrize("x", [-1e6, -50.0, -1.0, 0.0, 1.0, 50.0, 1e6])
+def test_a_lorentzian_is_its_own_convolution(dimensions, x):
+    def integrand(root):
+        return 2 * root ** (dimensions - 1) / ((x - root * root) ** 2 + 1)
+
+    with mpmath.workdps(30):
+        marks = {mpmath.sqrt(max(x + offset, 0)) for offset in (-5, -1, 0, 1, 5)}
+        outer = mpmath.sqrt(abs(x))
+        points = sorted({mpmath.mpf(0), mpmath.mpf(1), *marks, outer + 10, 10 * outer + 100, mpmath.inf})
+        expected = mpmath.quad(integrand, points) / mpmath.pi / mpmath.gamma(mpmath.mpf(dimensions) / 2)
+    assert spread_level(dimensions, "lorentzian", x)[0] == pytest.approx(float(expected), rel=STATED)
+
+
+def test_a_lorentzian_line_has_its_half_height_at_its_width():
+    density, integral = spread_level(0, "lorentzian", np.array([-1.0, 0.0, 1.0]))
+    assert density == pytest.approx([0.5 / math.pi, 1 / math.pi, 0.5 / math.pi], rel=STATED)
+    assert integral == pytest.approx([0.25, 0.5, 0.75], rel=STATED)
+
+
+@pytest.mark.parametrize("kind", ["gaussian", "lorentzian", "thermal"])
+@pytest.mark.parametrize("dimensions", [0, 1, 2, 3])
+@given(st.floats(-20, 200))
+def test_the_integral_rises_by_the_density(kind, dimensions, x):
+    step = 1e-4
+    above = spread_level(dimensions, kind, x + step, -5.0)[1]
+    below = spread_level(dimensions, kind, x - step, -5.0)[1]
+    density = spread_level(dimensions, kind, x)[0]
+    # A central difference is off by step^2/6 of the second derivative (at most 21 times the density at x = -20 with
+    # the Gaussian: 400), and by the rounding of the integral over the step.
+    rounding = 4e-16 * (abs(above) + abs(x) + 1) ** 1.5 / step
+    assert abs((above - below) / (2 * step) - density) <= 1e-6 * density + rounding
+
+
+@pytest.mark.parametrize("kind", ["gaussian", "lorentzian", "thermal"])
+@pytest.mark.parametrize("dimensions", [1, 2, 3])
+def test_far_above_its_edge_a_level_is_sharp_again(kind, dimensions):
+    x = 1e8
+    # The leading correction is of relative order 1/x with the Lorentzian, 1/x^2 with the others.
+    assert spread_level(dimensions, kind, x)[0] == pytest.approx(
+        x ** (dimensions / 2 - 1) / math.gamma(dimensions / 2), rel=2e-8
+    )
+
+
+@pytest.mark.parametrize("kind", ["gaussian", "lorentzian", "thermal"])
+@pytest.mark.parametrize("dimensions", [0, 1, 2, 3])
+def test_one_energy_and_many_agree(kind, dimensions):
+    grid = np.linspace(-30, 30, 61)
+    many = spread_level(dimensions, kind, grid.reshape(61, 1))
+    for part in (0, 1):
+        ones = [spread_level(dimensions, kind, float(x))[part] for x in grid]
+        assert many[part].shape == (61, 1)
+        # The thermal shape's two paths round apart by a unit of the last digit.
+        assert many[part].ravel() == pytest.approx(ones, rel=STATED, abs=1e-300)
+
+
+def test_the_tables_are_those_that_their_script_made():
+    with files("service.physics.tables").joinpath("gaussian.npz").open("rb") as opened, np.load(opened) as arrays:
+        digest = hashlib.sha256()
+        for name in sorted(arrays):
+            digest.update(name.encode() + np.ascontiguousarray(arrays[name]).tobytes())
+    assert digest.hexdigest() == GAUSSIAN_CHECKSUM
