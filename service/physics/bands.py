@@ -1,7 +1,10 @@
 """The band: effective masses along the axes and the degeneracies of its states."""
 
-from dataclasses import dataclass
+from dataclasses import astuple, dataclass
 from typing import Final
+
+import numpy as np
+from numpy.typing import NDArray
 
 from service.physics.values import Values
 
@@ -25,6 +28,10 @@ class Band:
     mass_y: Values
     mass_z: Values
     degeneracy: Values
+
+    def take(self, rows: NDArray[np.intp] | NDArray[np.bool_]) -> "Band":
+        """Return the band of some of N samples."""
+        return Band(*(part[rows] if isinstance(part, np.ndarray) else part for part in astuple(self)))
 
     def mass(self, axes: str) -> Values:
         r"""Return the density-of-states mass over some axes, the geometric mean of their masses.

@@ -9,7 +9,8 @@ from numpy.typing import NDArray
 from service.physics.broadening import Broadening, spread_level
 from service.physics.constants import BOLTZMANN, REDUCED_PLANCK
 from service.physics.fermi_dirac import fermi_dirac_integral, fermi_dirac_tail, inverse_fermi_dirac_integral
-from service.physics.filling.states import Ladder, States
+from service.physics.filling.states import States
+from service.physics.levels.source import Ladder
 from service.physics.values import Values, choose, largest
 
 

@@ -6,7 +6,7 @@ import numpy as np
 
 from service.physics.constants import BOLTZMANN, REDUCED_PLANCK
 from service.physics.fermi_dirac import fermi_dirac_integral
-from service.physics.filling.states import Ladder
+from service.physics.levels.source import Ladder
 from service.physics.values import FloatArray
 
 

@@ -7,33 +7,14 @@ per volume in bulk (D = 3), per area in a film (2), per length in a wire (1), a 
 
 from abc import ABC, abstractmethod
 from collections.abc import Callable
-from dataclasses import dataclass
 from typing import Self
 
 import numpy as np
 from numpy.typing import NDArray
 
 from service.physics.broadening import Broadening
-from service.physics.values import FloatArray, Values
-
-
-@dataclass(frozen=True, slots=True)
-class Ladder:
-    """The first levels of one sample, lowest first; levels of one energy are one entry.
-
-    Attributes
-    ----------
-    quantum_numbers : ndarray of int, shape (L, Q)
-        One set of quantum numbers for each level, the lowest in lexical order where several share the energy [1].
-    edge : ndarray, shape (L,)
-        Energy of the level, or of the bottom of its subband, above the lowest level [J].
-    degeneracy : ndarray, shape (L,)
-        Orbital levels at that energy, spin and valleys not counted [1].
-    """
-
-    quantum_numbers: NDArray[np.int64]
-    edge: FloatArray
-    degeneracy: FloatArray
+from service.physics.levels.source import Ladder
+from service.physics.values import Values
 
 
 class States(ABC):

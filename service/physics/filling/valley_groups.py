@@ -8,7 +8,8 @@ import numpy as np
 from numpy.typing import NDArray
 
 from service.physics.broadening import Broadening
-from service.physics.filling.states import Ladder, States
+from service.physics.filling.states import States
+from service.physics.levels.source import Ladder
 from service.physics.roots import increasing_root
 from service.physics.values import FloatArray, Values, choose, largest, logarithm, smallest
 

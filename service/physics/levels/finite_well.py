@@ -5,6 +5,7 @@ import math
 import numpy as np
 
 from service.physics.constants import REDUCED_PLANCK
+from service.physics.levels.source import Ladder, simple_ladder
 from service.physics.roots import increasing_root
 from service.physics.values import FloatArray
 
@@ -40,6 +41,7 @@ class FiniteWell:
     """
 
     closes = True
+    weyl = None
 
     def __init__(self, thickness: float, mass: float, barrier: float, barrier_mass: float) -> None:
         self._scale = REDUCED_PLANCK**2 / (2.0 * mass * thickness**2)
@@ -50,10 +52,9 @@ class FiniteWell:
         """Return how many bound levels there are up to `energy` above the lowest [1]."""
         return float(np.searchsorted(self._edges, self.lowest + energy, side="right"))
 
-    def edges_up_to(self, energy: float) -> FloatArray:
-        """Return the edges up to `energy`, from the lowest level [J]."""
-        relative = self._edges - self.lowest
-        return relative[: max(1, int(np.searchsorted(relative, energy, side="right")))]
+    def levels_up_to(self, energy: float) -> Ladder:
+        """Return the levels up to `energy` above the lowest."""
+        return simple_ladder(self._edges - self.lowest).up_to(energy)
 
 
 def _phases(top: float, mass_ratio: float) -> FloatArray:

@@ -4,7 +4,7 @@ import math
 
 import numpy as np
 
-from service.physics.values import FloatArray
+from service.physics.levels.source import MOST_LEVELS, Ladder, TooManyLevels, simple_ladder
 
 
 class ParabolicWell:
@@ -23,6 +23,7 @@ class ParabolicWell:
     """
 
     closes = False
+    weyl = None
 
     def __init__(self, level_spacing: float) -> None:
         self._spacing = level_spacing
@@ -32,6 +33,8 @@ class ParabolicWell:
         """Return how many levels there are up to `energy` above the lowest [1]."""
         return energy / self._spacing + 1.0
 
-    def edges_up_to(self, energy: float) -> FloatArray:
-        """Return the edges up to `energy`, from the lowest level [J]."""
-        return self._spacing * np.arange(max(0, math.floor(energy / self._spacing)) + 1.0)
+    def levels_up_to(self, energy: float) -> Ladder:
+        """Return the levels up to `energy` above the lowest."""
+        if self.count_estimate(energy) > MOST_LEVELS:
+            raise TooManyLevels(self.count_estimate(energy))
+        return simple_ladder(self._spacing * np.arange(max(0, math.floor(energy / self._spacing)) + 1.0))

@@ -6,6 +6,7 @@ import numpy as np
 from scipy.special import ai_zeros, airy
 
 from service.physics.constants import ELEMENTARY_CHARGE, REDUCED_PLANCK
+from service.physics.levels.source import MOST_LEVELS, Ladder, TooManyLevels, simple_ladder
 from service.physics.values import FloatArray
 
 _TABULATED = 24
@@ -32,6 +33,7 @@ class TriangularWell:
     """
 
     closes = False
+    weyl = None
 
     def __init__(self, mass: float, field: float) -> None:
         force = ELEMENTARY_CHARGE * field
@@ -42,11 +44,12 @@ class TriangularWell:
         """Return how many levels there are up to `energy` above the lowest, to within one [1]."""
         return 2.0 / (3.0 * math.pi) * math.pow((self.lowest + energy) / self._scale, 1.5) + 1.25
 
-    def edges_up_to(self, energy: float) -> FloatArray:
-        """Return the edges up to `energy`, from the lowest level [J]."""
+    def levels_up_to(self, energy: float) -> Ladder:
+        """Return the levels up to `energy` above the lowest."""
+        if self.count_estimate(energy) > MOST_LEVELS:
+            raise TooManyLevels(self.count_estimate(energy))
         zeros = airy_zeros(int(self.count_estimate(energy)) + 1)
-        edges: FloatArray = self._scale * (zeros - zeros[0])
-        return edges[: max(1, int(np.searchsorted(edges, energy, side="right")))]
+        return simple_ladder(self._scale * (zeros - zeros[0])).up_to(energy)
 
 
 def airy_zeros(count: int) -> FloatArray:

@@ -43,7 +43,7 @@ def even_and_odd_levels(thickness, mass, barrier, barrier_mass):
 def test_a_finite_well_has_the_levels_of_its_even_and_odd_equations(thickness, barrier_ratio):
     well = FiniteWell(thickness, MASS, 0.3 * EV, barrier_ratio * MASS)
     expected = even_and_odd_levels(thickness, MASS, 0.3 * EV, barrier_ratio * MASS)
-    edges = well.lowest + well.edges_up_to(math.inf)
+    edges = well.lowest + well.levels_up_to(math.inf).edge
     # The bracketing's own tolerance is 1e-15 of k L / 2, squared.
     assert edges == pytest.approx(expected, rel=1e-13)
     assert well.count_estimate(math.inf) == len(expected)
@@ -53,7 +53,7 @@ def test_a_finite_well_has_the_levels_of_its_even_and_odd_equations(thickness, b
 @settings(max_examples=50, deadline=None)
 def test_a_finite_well_always_binds_below_its_barrier(thickness, barrier, mass_ratio):
     well = FiniteWell(thickness, MASS, barrier * EV, mass_ratio * MASS)
-    edges = well.lowest + well.edges_up_to(math.inf)
+    edges = well.lowest + well.levels_up_to(math.inf).edge
     assert 0 < edges[0] and edges[-1] <= barrier * EV * (1 + 1e-15)
     assert (np.diff(edges) > 0).all()
 
@@ -87,7 +87,7 @@ def test_a_field_of_one_volt_per_ten_nanometres_has_its_textbook_levels():
     zeros = airy_zeros(40)
     # E_n = scale |a_n|: T. Ando, A. B. Fowler, F. Stern, Rev. Mod. Phys. 54, 437 (1982), section III.
     assert well.lowest == pytest.approx(scale * zeros[0], rel=1e-15)
-    edges = well.edges_up_to(scale * (zeros[-1] - zeros[0]) * (1 + 1e-12))
+    edges = well.levels_up_to(scale * (zeros[-1] - zeros[0]) * (1 + 1e-12)).edge
     assert edges == pytest.approx(scale * (zeros - zeros[0]), rel=1e-14, abs=1e-15 * scale)
     assert well.count_estimate(edges[-1]) == pytest.approx(40, abs=1.5)
 
@@ -95,7 +95,7 @@ def test_a_field_of_one_volt_per_ten_nanometres_has_its_textbook_levels():
 def test_a_parabola_has_even_steps():
     well = ParabolicWell(5e-3 * EV)
     assert well.lowest == 2.5e-3 * EV
-    assert well.edges_up_to(26e-3 * EV) == pytest.approx(5e-3 * EV * np.arange(6), rel=1e-15)
+    assert well.levels_up_to(26e-3 * EV).edge == pytest.approx(5e-3 * EV * np.arange(6), rel=1e-15)
     assert well.count_estimate(26e-3 * EV) == pytest.approx(6.2)
 
 
@@ -103,4 +103,4 @@ def test_a_parabola_has_even_steps():
     "well", [FiniteWell(10e-9, MASS, 0.3 * EV, MASS), TriangularWell(MASS, 1e7), ParabolicWell(EV)]
 )
 def test_the_lowest_level_is_always_listed(well):
-    assert well.edges_up_to(0.0).tolist() == [0.0]
+    assert well.levels_up_to(0.0).edge.tolist() == [0.0]

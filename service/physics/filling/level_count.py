@@ -1,0 +1,241 @@
+"""Any ladder of one sample whose levels are lines: a box or a sphere, filled with a count of carriers."""
+
+import math
+from typing import Self
+
+import numpy as np
+from numpy.typing import NDArray
+
+from service.physics.broadening import Broadening
+from service.physics.constants import BOLTZMANN
+from service.physics.filling.level_curve import LevelFunction, over_levels, spread
+from service.physics.filling.states import States
+from service.physics.levels.source import Ladder, LevelSource
+from service.physics.roots import increasing_root
+from service.physics.values import FloatArray, Values
+
+REACH = 45.0
+"""Levels this many kT away from the chemical potential are full or empty to within exp(-45) = 3e-20."""
+
+FULL = 16.0 * float(np.finfo(np.float64).eps)
+"""A count this close to a full shell, relative, fills it: the rounding of a density times a volume."""
+
+
+class LevelCount(States):
+    r"""The states of one sample's ladder of lines.
+
+    .. math:: N = \sum_i g\, d_i\, f(E_i)
+
+    Parameters
+    ----------
+    source : LevelSource
+        The ladder.
+    degeneracy : float
+        g, spin degeneracy times valleys [1].
+
+    Notes
+    -----
+    Between a full shell and an empty one N(mu) - N is exactly zero in doubles over most of the gap. So the electrons
+    above are set against the holes below, ln(electrons) = ln(holes), which keeps its slope at any temperature.
+
+    References
+    ----------
+    R. Kubo, J. Phys. Soc. Jpn. 17, 975 (1962), for the occupation of discrete levels.
+    """
+
+    free_dimensions = 0
+    method = "level-sum"
+    relative_error_bound = 1e-12
+
+    def __init__(self, source: LevelSource, degeneracy: float) -> None:
+        self._source = source
+        self._degeneracy = degeneracy
+        self._known: tuple[float, Ladder] | None = None
+
+    @property
+    def lowest_level(self) -> float:
+        return self._source.lowest
+
+    def take(self, rows: NDArray[np.intp] | NDArray[np.bool_]) -> Self:
+        raise TypeError("one sample has no rows to take")
+
+    def work(self, density: Values, temperature: Values) -> float:
+        reach = self._most(float(density)) + REACH * BOLTZMANN * float(temperature)
+        return self._source.count_estimate(reach)
+
+    def _most(self, count: float) -> float:
+        """Return an energy above the Fermi energy, found on Weyl's count before any level is listed."""
+        assert self._source.weyl is not None
+        energy = self._source.lowest
+        while self._smooth_count(energy + self._source.lowest) < 1.5 * count + 10.0:
+            energy *= 1.1
+        return energy
+
+    def _smooth_count(self, energy: float) -> float:
+        assert self._source.weyl is not None
+        return self._degeneracy * sum(term * energy ** (power / 2.0) for power, term in enumerate(self._source.weyl))
+
+    def _levels(self, energy: float) -> Ladder:
+        """Return the levels up to an energy, listed once for the highest that was asked."""
+        if self._known is None or energy > self._known[0]:
+            self._known = energy, self._source.levels_up_to(energy)
+        return self._known[1].up_to(energy)
+
+    def _shells(self, count: float) -> tuple[Ladder, int, float]:
+        """Return levels past the Fermi energy, the place of the highest that holds carriers, and what it holds."""
+        energy = self._most(count)
+        while True:
+            ladder = self._levels(energy)
+            room = self._degeneracy * np.cumsum(ladder.degeneracy)
+            place = int(np.searchsorted(room, count * (1.0 - FULL), side="left"))
+            if place < room.size - 1:
+                break
+            energy *= 1.5
+        held = count - (float(room[place - 1]) if place else 0.0)
+        capacity = self._degeneracy * float(ladder.degeneracy[place])
+        full = abs(float(room[place]) - count) <= FULL * count
+        return ladder, place, capacity if full else held
+
+    def fermi_energy(self, density: Values) -> float:
+        ladder, place, _ = self._shells(float(density))
+        return float(ladder.edge[place])
+
+    def ground_chemical_potential(self, density: Values) -> float:
+        ladder, place, held = self._shells(float(density))
+        if held < self._degeneracy * ladder.degeneracy[place]:
+            return float(ladder.edge[place])
+        return 0.5 * float(ladder.edge[place] + ladder.edge[place + 1])
+
+    def ground_energy_density(self, density: Values) -> float:
+        ladder, place, held = self._shells(float(density))
+        below = self._degeneracy * float(np.dot(ladder.degeneracy[:place], ladder.edge[:place]))
+        return below + held * float(ladder.edge[place])
+
+    def states_below(self, energy: Values) -> Values:
+        ladder = self._levels(max(0.0, float(np.max(energy))))
+        room = np.concatenate([[0.0], self._degeneracy * np.cumsum(ladder.degeneracy)])
+        below = room[np.searchsorted(ladder.edge, energy, side="right")]
+        return below if isinstance(energy, np.ndarray) else float(below)
+
+    def density_of_states(self, energy: Values) -> Values:
+        raise ValueError("the states are lines: they have no density that is not broadened")
+
+    def levels_below(self, energy: Values) -> Values:
+        return self.states_below(energy) / self._degeneracy
+
+    def warm_chemical_potential(self, density: Values, temperature: Values) -> float:
+        thermal_energy = BOLTZMANN * float(temperature)
+        ladder, place, held = self._shells(float(density))
+        highest, following = float(ladder.edge[place]), float(ladder.edge[place + 1])
+        ladder = self._levels(following + REACH * thermal_energy)
+        first = int(np.searchsorted(ladder.edge, highest - REACH * thermal_energy))
+        balance = _Balance(
+            (ladder.edge[first:] - highest) / thermal_energy,
+            self._degeneracy * ladder.degeneracy[first:],
+            place - first,
+            held,
+        )
+        return highest + thermal_energy * balance.root((following - highest) / thermal_energy)
+
+    def carrier_density(self, chemical_potential: Values, temperature: Values) -> Values:
+        return self._thermal(chemical_potential, temperature, _occupied)
+
+    def compressibility(self, chemical_potential: Values, temperature: Values) -> Values:
+        return self._thermal(chemical_potential, temperature, _fall) / (BOLTZMANN * temperature)
+
+    def _thermal(self, chemical_potential: Values, temperature: Values, part: LevelFunction) -> Values:
+        thermal_energy = BOLTZMANN * float(temperature)
+        ladder = self._levels(max(0.0, float(np.max(chemical_potential))) + REACH * thermal_energy)
+        return self._degeneracy * over_levels(ladder, chemical_potential, lambda above: part(above / thermal_energy))
+
+    def energy_density(self, chemical_potential: Values, temperature: Values) -> float:
+        potential, thermal_energy = float(chemical_potential), BOLTZMANN * float(temperature)
+        ladder = self._levels(max(0.0, potential) + REACH * thermal_energy)
+        filled = _occupied((potential - ladder.edge) / thermal_energy)
+        return self._degeneracy * float(np.dot(ladder.degeneracy * ladder.edge, filled))
+
+    def carriers_above(self, energy: Values, chemical_potential: Values, temperature: Values) -> float:
+        energy, potential, thermal_energy = float(energy), float(chemical_potential), BOLTZMANN * float(temperature)
+        ladder = self._levels(max(0.0, potential, energy) + REACH * thermal_energy)
+        first = int(np.searchsorted(ladder.edge, energy, side="right"))
+        filled = _occupied((potential - ladder.edge[first:]) / thermal_energy)
+        return self._degeneracy * float(np.dot(ladder.degeneracy[first:], filled))
+
+    def spread_states(self, energy: Values, broadening: Broadening) -> tuple[Values, Values]:
+        density, integrated = spread(self._source, self._levels, 0, energy, broadening)
+        return self._degeneracy * density / float(broadening.width), self._degeneracy * integrated
+
+    def ladder(self, highest: float, most: int) -> tuple[Ladder, int]:
+        ladder = self._levels(max(highest, 0.0))
+        return ladder.first(most), ladder.edge.size
+
+
+class _Balance:
+    """Electrons above the highest occupied shell against holes below and in it, as logarithms."""
+
+    def __init__(self, height: FloatArray, room: FloatArray, place: int, held: float) -> None:
+        self._below, self._above = slice(0, place), slice(place + 1, None)
+        self._height, self._log_room = height, np.log(room)
+        self._place, self._held, self._capacity = place, held, float(room[place])
+        self._mostly_full = held > 0.5 * self._capacity
+
+    def root(self, gap: float) -> float:
+        """Return (mu - E) / kT, E the highest occupied level, from the limit of T -> 0 outwards."""
+        missing = self._capacity - self._held
+        start = 0.5 * gap if missing <= 0.0 else math.log(self._held / missing)
+        step = 1.0
+        low = high = min(start, 0.5 * gap)
+        while self._difference(low)[0] > 0.0:
+            low -= step
+            step *= 2.0
+        step = 1.0
+        while self._difference(high)[0] < 0.0:
+            high += step
+            step *= 2.0
+        return float(increasing_root(self._difference, low, high, 1e-15 * max(1.0, abs(low), abs(high))))
+
+    def _difference(self, potential: Values) -> tuple[float, float]:
+        """Return ln(electrons) - ln(holes) and its slope; a part-filled shell counts on the side it is closer to."""
+        reduced = potential - self._height
+        log_filled = np.minimum(reduced, 0.0) - np.log1p(np.exp(-np.abs(reduced)))
+        log_empty = log_filled - reduced
+        electrons, holes = [self._log_room[self._above] + log_filled[self._above]], []
+        slopes_up, slopes_down = [np.exp(log_empty[self._above])], []
+        holes.append(self._log_room[self._below] + log_empty[self._below])
+        slopes_down.append(np.exp(log_filled[self._below]))
+        shell_filled = self._log_room[self._place] + log_filled[self._place]
+        shell_empty = self._log_room[self._place] + log_empty[self._place]
+        if self._mostly_full:
+            holes.append(np.atleast_1d(shell_empty))
+            slopes_down.append(np.atleast_1d(np.exp(log_filled[self._place])))
+            constant, side = self._capacity - self._held, electrons
+        else:
+            electrons.append(np.atleast_1d(shell_filled))
+            slopes_up.append(np.atleast_1d(np.exp(log_empty[self._place])))
+            constant, side = self._held, holes
+        if constant > 0.0:
+            side.append(np.array([math.log(constant)]))
+            (slopes_up if side is electrons else slopes_down).append(np.zeros(1))
+        up, up_slope = _log_sum(np.concatenate(electrons), np.concatenate(slopes_up))
+        down, down_slope = _log_sum(np.concatenate(holes), np.concatenate(slopes_down))
+        return up - down, up_slope + down_slope
+
+
+def _log_sum(logarithms: FloatArray, slopes: FloatArray) -> tuple[float, float]:
+    """Return ln of a sum of exponentials, and the mean of the terms' slopes, each weighed by its share."""
+    largest = float(logarithms.max())
+    parts = np.exp(logarithms - largest)
+    total = float(parts.sum())
+    return largest + math.log(total), float(np.dot(parts, slopes)) / total
+
+
+def _occupied(reduced: FloatArray) -> FloatArray:
+    """Return f for (mu - E)/kT."""
+    decay = np.exp(-np.abs(reduced))
+    return np.asarray(np.where(reduced >= 0.0, 1.0, decay) / (1.0 + decay))
+
+
+def _fall(reduced: FloatArray) -> FloatArray:
+    """Return -df/dE times kT for (mu - E)/kT."""
+    decay = np.exp(-np.abs(reduced))
+    return np.asarray(decay / (1.0 + decay) ** 2)
