@@ -1,6 +1,6 @@
 """The band: effective masses along the axes and the degeneracies of its states."""
 
-from dataclasses import astuple, dataclass
+from dataclasses import dataclass
 from typing import Final
 
 import numpy as np
@@ -29,9 +29,13 @@ class Band:
     mass_z: Values
     degeneracy: Values
 
+    def parts(self) -> tuple[Values, Values, Values, Values]:
+        """Return masses and degeneracy, in the order of the attributes."""
+        return self.mass_x, self.mass_y, self.mass_z, self.degeneracy
+
     def take(self, rows: NDArray[np.intp] | NDArray[np.bool_]) -> "Band":
         """Return the band of some of N samples."""
-        return Band(*(part[rows] if isinstance(part, np.ndarray) else part for part in astuple(self)))
+        return Band(*(part[rows] if isinstance(part, np.ndarray) else part for part in self.parts()))
 
     def mass(self, axes: str) -> Values:
         r"""Return the density-of-states mass over some axes, the geometric mean of their masses.

@@ -11,12 +11,14 @@ from types import MappingProxyType
 from typing import Final
 
 from service.physics.bands import Band
-from service.physics.filling.box import RectangularBox
 from service.physics.filling.film import HardWallFilm
 from service.physics.filling.ideal import IdealGas
-from service.physics.filling.round import Cylinder, Sphere
+from service.physics.filling.level_count import LevelCount
+from service.physics.filling.level_sum import LevelSum
+from service.physics.filling.per_sample import one_or_many
 from service.physics.filling.states import States
-from service.physics.filling.wire import RectangularWire
+from service.physics.levels.rectangular import RectangularLevels
+from service.physics.levels.round import RoundLevels
 from service.physics.values import Values
 
 Lengths = Mapping[str, Values]
@@ -54,86 +56,86 @@ class Geometry:
     extent: Callable[[Lengths], Values]
 
 
-def _nothing(lengths: Lengths) -> Values:
+def _bulk(band: Band, lengths: Lengths) -> States:
+    return IdealGas(3, band.mass("xyz"), band.degeneracy)
+
+
+def _sheet(band: Band, lengths: Lengths) -> States:
+    return IdealGas(2, band.mass("xy"), band.degeneracy)
+
+
+def _line(band: Band, lengths: Lengths) -> States:
+    return IdealGas(1, band.mass("x"), band.degeneracy)
+
+
+def _film(band: Band, lengths: Lengths) -> States:
+    return HardWallFilm(band, lengths["thickness"])
+
+
+def _wire(band: Band, lengths: Lengths) -> States:
+    def build(mass_x: float, mass_y: float, mass_z: float, degeneracy: float, width: float, height: float) -> States:
+        return LevelSum(RectangularLevels((width, height), (mass_y, mass_z)), 1, mass_x, degeneracy)
+
+    return one_or_many(build, *band.parts(), lengths["width"], lengths["height"])
+
+
+def _cylinder(band: Band, lengths: Lengths) -> States:
+    def build(mass: float, degeneracy: float, diameter: float) -> States:
+        return LevelSum(RoundLevels("cylinder", diameter, mass), 1, mass, degeneracy)
+
+    return one_or_many(build, band.mass_x, band.degeneracy, lengths["diameter"])
+
+
+def _box(band: Band, lengths: Lengths) -> States:
+    def build(mass_x: float, mass_y: float, mass_z: float, degeneracy: float, *sides: float) -> States:
+        return LevelCount(RectangularLevels(sides, (mass_x, mass_y, mass_z)), degeneracy)
+
+    return one_or_many(build, *band.parts(), lengths["length"], lengths["width"], lengths["height"])
+
+
+def _sphere(band: Band, lengths: Lengths) -> States:
+    def build(mass: float, degeneracy: float, diameter: float) -> States:
+        return LevelCount(RoundLevels("sphere", diameter, mass), degeneracy)
+
+    return one_or_many(build, band.mass_x, band.degeneracy, lengths["diameter"])
+
+
+def _none(lengths: Lengths) -> Values:
     return 1.0
 
 
-_HARD_WALLS = ("free electrons in a parabolic band", "infinite potential walls", "Fermi-Dirac statistics")
+def _thickness(lengths: Lengths) -> Values:
+    return lengths["thickness"]
+
+
+def _rectangle(lengths: Lengths) -> Values:
+    return lengths["width"] * lengths["height"]
+
+
+def _circle(lengths: Lengths) -> Values:
+    return math.pi / 4.0 * lengths["diameter"] ** 2
+
+
+def _cuboid(lengths: Lengths) -> Values:
+    return lengths["length"] * lengths["width"] * lengths["height"]
+
+
+def _ball(lengths: Lengths) -> Values:
+    return math.pi / 6.0 * lengths["diameter"] ** 3
+
+
 _IDEAL = ("free electrons in a parabolic band", "Fermi-Dirac statistics")
+_HARD_WALLS = ("free electrons in a parabolic band", "infinite potential walls", "Fermi-Dirac statistics")
 
 GEOMETRIES: Final[Mapping[tuple[str, str], Geometry]] = MappingProxyType(
     {
-        ("bulk", "hard-wall"): Geometry(
-            3,
-            "xyz",
-            True,
-            False,
-            _IDEAL,
-            lambda band, lengths: IdealGas(3, band.mass("xyz"), band.degeneracy),
-            _nothing,
-        ),
-        ("sheet", "hard-wall"): Geometry(
-            2,
-            "xy",
-            False,
-            False,
-            _IDEAL,
-            lambda band, lengths: IdealGas(2, band.mass("xy"), band.degeneracy),
-            _nothing,
-        ),
-        ("line", "hard-wall"): Geometry(
-            1,
-            "x",
-            False,
-            False,
-            _IDEAL,
-            lambda band, lengths: IdealGas(1, band.mass("x"), band.degeneracy),
-            _nothing,
-        ),
-        ("film", "hard-wall"): Geometry(
-            2,
-            "xyz",
-            True,
-            False,
-            _HARD_WALLS,
-            lambda band, lengths: HardWallFilm(band, lengths["thickness"]),
-            lambda lengths: lengths["thickness"],
-        ),
-        ("wire", "hard-wall"): Geometry(
-            1,
-            "xyz",
-            True,
-            False,
-            _HARD_WALLS,
-            lambda band, lengths: RectangularWire(band, lengths["width"], lengths["height"]),
-            lambda lengths: lengths["width"] * lengths["height"],
-        ),
-        ("cylinder", "hard-wall"): Geometry(
-            1,
-            "xyz",
-            True,
-            True,
-            _HARD_WALLS,
-            lambda band, lengths: Cylinder(band, lengths["diameter"]),
-            lambda lengths: math.pi / 4.0 * lengths["diameter"] ** 2,
-        ),
-        ("box", "hard-wall"): Geometry(
-            0,
-            "xyz",
-            True,
-            False,
-            _HARD_WALLS,
-            lambda band, lengths: RectangularBox(band, lengths["length"], lengths["width"], lengths["height"]),
-            lambda lengths: lengths["length"] * lengths["width"] * lengths["height"],
-        ),
-        ("sphere", "hard-wall"): Geometry(
-            0,
-            "xyz",
-            True,
-            True,
-            _HARD_WALLS,
-            lambda band, lengths: Sphere(band, lengths["diameter"]),
-            lambda lengths: math.pi / 6.0 * lengths["diameter"] ** 3,
-        ),
+        ("bulk", "hard-wall"): Geometry(3, "xyz", True, False, _IDEAL, _bulk, _none),
+        ("sheet", "hard-wall"): Geometry(2, "xy", False, False, _IDEAL, _sheet, _none),
+        ("line", "hard-wall"): Geometry(1, "x", False, False, _IDEAL, _line, _none),
+        ("film", "hard-wall"): Geometry(2, "xyz", True, False, _HARD_WALLS, _film, _thickness),
+        ("wire", "hard-wall"): Geometry(1, "xyz", True, False, _HARD_WALLS, _wire, _rectangle),
+        ("cylinder", "hard-wall"): Geometry(1, "xyz", True, True, _HARD_WALLS, _cylinder, _circle),
+        ("box", "hard-wall"): Geometry(0, "xyz", True, False, _HARD_WALLS, _box, _cuboid),
+        ("sphere", "hard-wall"): Geometry(0, "xyz", True, True, _HARD_WALLS, _sphere, _ball),
     }
 )

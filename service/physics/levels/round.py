@@ -71,10 +71,13 @@ class RoundLevels:
 @cache
 def _table(shape: str) -> tuple[NDArray[np.int64], FloatArray, FloatArray]:
     """Return quantum numbers, zeros and degeneracies, sorted by zero and read-only."""
-    opened = files("service.physics.tables").joinpath("bessel_zeros.npz").open("rb")
-    with opened, np.load(opened) as arrays:
-        zeros, numbers = arrays[f"{shape}_zeros"], arrays[f"{shape}_numbers"].astype(np.int64)
-    order = numbers[:, 0]
+    with files("service.physics.tables").joinpath("bessel_zeros.npz").open("rb") as opened, np.load(opened) as arrays:
+        by_order, counts = arrays[f"{shape}_zeros"], arrays[f"{shape}_counts"].astype(np.int64)
+    order = np.repeat(np.arange(counts.size), counts)
+    index = np.arange(order.size) - np.repeat(np.cumsum(counts) - counts, counts) + 1
+    ascending = np.argsort(by_order, kind="stable")
+    zeros, order = by_order[ascending], order[ascending]
+    numbers = np.column_stack([order, index[ascending]])
     degeneracies = np.where(order > 0, 2.0, 1.0) if shape == "cylinder" else 2.0 * order + 1.0
     for array in (numbers, zeros, degeneracies):
         array.flags.writeable = False
