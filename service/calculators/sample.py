@@ -1,10 +1,11 @@
 """The sample as the caller states it, in SI, and the electron gas that it holds."""
 
 from collections.abc import Mapping
-from dataclasses import dataclass
+from dataclasses import dataclass, replace
 from typing import Any, Final
 
 import numpy as np
+from numpy.typing import NDArray
 
 from service.errors import Fault, Unsupported
 from service.physics.bands import FREE_AXES, Band
@@ -56,6 +57,24 @@ class Sample:
     spin_degeneracy: Values
     relative_permittivity: Values
     count: int | None
+
+    def take(self, rows: NDArray[np.intp]) -> "Sample":
+        """Return some of N samples."""
+        return replace(
+            self,
+            carrier_density=_rows(self.carrier_density, rows),
+            lengths={name: _rows(length, rows) for name, length in self.lengths.items()},
+            temperature=_rows(self.temperature, rows),
+            effective_mass=tuple(_rows(mass, rows) for mass in self.effective_mass),
+            valleys=_rows(self.valleys, rows),
+            spin_degeneracy=_rows(self.spin_degeneracy, rows),
+            relative_permittivity=_rows(self.relative_permittivity, rows),
+            count=len(rows),
+        )
+
+
+def _rows(values: Values, rows: NDArray[np.intp]) -> Values:
+    return values[rows] if isinstance(values, np.ndarray) else values
 
 
 @dataclass(frozen=True, slots=True)

@@ -1,0 +1,82 @@
+"""From the bytes of a request to its JSON: strict, bounded, and read once."""
+
+import json
+from typing import Any, Final
+
+import orjson
+from flask import Request
+
+from service.web.problems import RequestError
+
+MEDIA_TYPE: Final = "application/json"
+
+_CHECKED_FOR_DUPLICATES: Final = 16_384
+"""Bytes up to which a second parse looks for duplicate member names; above, the last of two names wins."""
+
+
+class _DuplicateName(ValueError):
+    """An object names a member twice."""
+
+
+def stated_request(request: Request, most_bytes: int) -> Any:
+    """Return the JSON that a request states, in its body or, with GET, in its query.
+
+    Raises
+    ------
+    RequestError
+        Where there is none, or none that this service reads.
+    """
+    if request.method in ("GET", "HEAD"):
+        text = request.args.get("request")
+        if text is None:
+            raise RequestError("bad-request", "GET takes the request as JSON in the query parameter `request`")
+        return parsed(text.encode())
+    if request.mimetype != MEDIA_TYPE:
+        sent = request.mimetype[:80] or "none"
+        detail = f"the body's type must be {MEDIA_TYPE}, not {sent}"
+        raise RequestError("unsupported-media-type", detail, {"Accept-Post": MEDIA_TYPE})
+    if request.headers.get("Content-Encoding", "identity").lower() != "identity":
+        raise RequestError("unsupported-media-type", "the body must be sent as it is, without a content encoding")
+    return parsed(_body(request, most_bytes))
+
+
+def _body(request: Request, most_bytes: int) -> bytes:
+    """Return the body, read no further than one byte beyond the limit, whichever way it is sent."""
+    length = request.content_length
+    if length is None and "chunked" not in request.headers.get("Transfer-Encoding", "").lower():
+        raise RequestError("length-required", "the request must state a Content-Length, or send its body in chunks")
+    if length is not None and length > most_bytes:
+        raise RequestError("body-too-large", f"the body has {length} bytes; the limit is {most_bytes}")
+    body = request.stream.read(most_bytes + 1)
+    if len(body) > most_bytes:
+        raise RequestError("body-too-large", f"the body has more than {most_bytes} bytes, which is the limit")
+    return body
+
+
+def parsed(body: bytes) -> Any:
+    """Return the JSON value of some bytes.
+
+    Raises
+    ------
+    RequestError
+        Where they are no JSON, hold a number beyond a double, or name a member twice.
+    """
+    if not body:
+        raise RequestError("not-json", "the body is empty; it must be a JSON object")
+    try:
+        value = orjson.loads(body)
+        if len(body) <= _CHECKED_FOR_DUPLICATES:
+            json.loads(body, object_pairs_hook=_without_duplicates)
+    except orjson.JSONDecodeError as error:
+        raise RequestError("not-json", f"the body is no JSON: {error}") from None
+    except _DuplicateName as error:
+        raise RequestError("not-json", f"an object names the member {str(error)[:60]!r} twice") from None
+    except (RecursionError, ValueError):
+        raise RequestError("not-json", "the body is nested too deeply") from None
+    return value
+
+
+def _without_duplicates(pairs: list[tuple[str, Any]]) -> None:
+    if len({name for name, _ in pairs}) < len(pairs):
+        names = [name for name, _ in pairs]
+        raise _DuplicateName(next(name for name in names if names.count(name) > 1))
