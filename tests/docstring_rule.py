@@ -101,7 +101,9 @@ def _function_faults(node: Function, name: str, in_full: bool) -> Iterator[str]:
     parameters = [parameter for parameter in parameters if parameter not in ("self", "cls")]
     if in_full or "Parameters" in given:
         documented = [documented for entry in given.get("Parameters", []) for documented in entry.names]
-        yield from (f"{name}: parameter {missing} is not described" for missing in parameters if missing not in documented)
+        yield from (
+            f"{name}: parameter {missing} is not described" for missing in parameters if missing not in documented
+        )
         yield from (f"{name}: {extra} is no parameter" for extra in documented if extra not in parameters)
         returns = node.returns is not None and ast.unparse(node.returns) != "None"
         if returns and not given.get("Returns"):

@@ -36,7 +36,9 @@ FOREIGN_WORDS = [
         ("sylla", "bus"),
     )
 ]
-HOSTS = [a + b for a, b in (("pypi", r"\.org"), ("python", r"hosted\.org"), ("deb", r"\.debian\.org"), ("npm", r"js\.org"))]
+HOSTS = [
+    a + b for a, b in (("pypi", r"\.org"), ("python", r"hosted\.org"), ("deb", r"\.debian\.org"), ("npm", r"js\.org"))
+]
 PATHS = [a + b for a, b in (("/wo", "rk/"), ("/opt/", "fm"), ("/ro", "ot/"), ("/home/", r"\w"))]
 
 
@@ -219,10 +221,7 @@ def test_every_data_file_is_declared_for_the_wheel() -> None:
         for package in ("service", "schemas")
         for path in (ROOT / package).rglob("*")
         if path.is_file() and path.suffix not in (".py", ".pyc", ".md") and "deploy" not in path.parts
-        if not any(
-            path.match(pattern)
-            for pattern in declared.get(".".join(path.parent.relative_to(ROOT).parts), [])
-        )
+        if not any(path.match(pattern) for pattern in declared.get(".".join(path.parent.relative_to(ROOT).parts), []))
     ]
     assert not found
 

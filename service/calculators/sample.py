@@ -60,12 +60,13 @@ class Sample:
 
     def take(self, rows: NDArray[np.intp]) -> "Sample":
         """Return some of N samples."""
+        mass_x, mass_y, mass_z = (_rows(mass, rows) for mass in self.effective_mass)
         return replace(
             self,
             carrier_density=_rows(self.carrier_density, rows),
             lengths={name: _rows(length, rows) for name, length in self.lengths.items()},
             temperature=_rows(self.temperature, rows),
-            effective_mass=tuple(_rows(mass, rows) for mass in self.effective_mass),
+            effective_mass=(mass_x, mass_y, mass_z),
             valleys=_rows(self.valleys, rows),
             spin_degeneracy=_rows(self.spin_degeneracy, rows),
             relative_permittivity=_rows(self.relative_permittivity, rows),

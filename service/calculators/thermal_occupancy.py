@@ -91,11 +91,9 @@ def thermal_occupancy(sample: Sample, energies: FloatArray | None = None) -> The
     on_edge = edge_on_grid(states, relative, energies)
     return ThermalOccupancy(
         energy=np.broadcast_to(energies, relative.shape),
-        occupation=cast(FloatArray, occupied),
-        thermal_broadening=cast(
-            FloatArray, thermal_broadening(relative, _column(chemical_potential), _column(sample.temperature))
-        ),
-        occupied_density=_occupied_density(gas, relative, cast(FloatArray, occupied), on_edge),
+        occupation=occupied,
+        thermal_broadening=thermal_broadening(relative, _column(chemical_potential), _column(sample.temperature)),
+        occupied_density=_occupied_density(gas, relative, occupied, on_edge),
         levels=levels(gas, cast(float, fermi_energy), cast(float, chemical_potential)),
         excited_fraction=states.excited_density(fermi_energy, chemical_potential, sample.temperature) / gas.density,
         mean_energy=lowest

@@ -83,6 +83,7 @@ def add_document(app: Flask, path: str, document: Mapping[str, Any]) -> None:
         made.headers["ETag"] = f'"{tag}"'
         made.headers["Cache-Control"] = "public, max-age=3600"
         made.headers["Vary"] = "Accept"
-        return made.make_conditional(request)
+        made.make_conditional(request)
+        return made
 
     app.add_url_rule(path, path, view, methods=["GET"])

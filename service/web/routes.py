@@ -1,5 +1,6 @@
 """The addresses of the calculators: the same request by POST, QUERY or GET."""
 
+from collections.abc import Callable
 from typing import Final
 
 from flask import Flask, Response, request
@@ -30,7 +31,7 @@ def register(app: Flask, settings: Settings) -> None:
         )
 
 
-def _view(endpoint: Endpoint, limits: Limits, most_bytes: int):  # type: ignore[no-untyped-def]
+def _view(endpoint: Endpoint, limits: Limits, most_bytes: int) -> Callable[[], Response]:
     allowed = {"request", "format"}
 
     def view() -> Response:

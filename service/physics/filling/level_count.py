@@ -73,7 +73,8 @@ class LevelCount(States):
 
     def _smooth_count(self, energy: float) -> float:
         assert self._source.weyl is not None
-        return self._degeneracy * sum(term * energy ** (power / 2.0) for power, term in enumerate(self._source.weyl))
+        root = math.sqrt(energy)
+        return self._degeneracy * sum(term * root**power for power, term in enumerate(self._source.weyl))
 
     def _levels(self, energy: float) -> Ladder:
         """Return the levels up to an energy, listed once for the highest that was asked."""

@@ -33,7 +33,7 @@ class ValleyGroups(States):
         self.free_dimensions = groups[0].free_dimensions
         self.method = max((group.method for group in groups), key=("closed-form", "continuum", "level-sum").index)
         # The root's own tolerance stands beside the largest bound of a group.
-        self.relative_error_bound = largest(1e-14, reduce(largest, [group.relative_error_bound for group in groups]))
+        self.relative_error_bound = reduce(largest, [1e-14, *(group.relative_error_bound for group in groups)])
         self._lowest = reduce(smallest, [group.lowest_level for group in groups])
         self._offsets = [group.lowest_level - self._lowest for group in groups]
 
@@ -136,7 +136,8 @@ class ValleyGroups(States):
             filled = self.carrier_density(potential, temperature)
             return logarithm(filled / density), self.compressibility(potential, temperature) / filled
 
-        return increasing_root(excess, low, high, 1e-16 * largest(abs(low), abs(high)))
+        lowest, highest = np.abs(low), np.abs(high)
+        return increasing_root(excess, low, high, 1e-16 * largest(lowest, highest))
 
     def carrier_density(self, chemical_potential: Values, temperature: Values) -> Values:
         return self._total(lambda group, offset: group.carrier_density(chemical_potential - offset, temperature))

@@ -26,8 +26,9 @@ _PHASE_ORDERS: Final = (11, 9, 7, 5, 3, 1)
 _FIRST_ZEROS: Final = 7
 """The zeros of one order that lie too near its turning point for the phase's series."""
 
-_NEWTON_STEPS: Final = 5
-"""The phase is nearly straight over a spacing of zeros: from the first guess four steps reach the last digit."""
+_LEADING_STEPS: Final = 6
+_FULL_STEPS: Final = 3
+"""Newton steps on the phase's leading term, from anywhere in a window, and then on all of it, to the last digit."""
 
 
 @dataclass(frozen=True, slots=True)
@@ -223,27 +224,32 @@ def _zeros_up_to(index: FloatArray, early: FloatArray, x: float) -> FloatArray:
     """Return how many zeros of each index lie at or below x."""
     count = np.sum(early <= x, axis=0).astype(np.float64)
     many = count == _FIRST_ZEROS
-    phase, _ = _phase(index[many], np.full(int(many.sum()), x))
+    phase, _ = _phase(index[many], np.full(int(many.sum()), float(x)))
     count[many] = np.maximum(np.floor(phase / math.pi + 0.25), _FIRST_ZEROS)
     return count
 
 
 def _zeros_by_phase(index: FloatArray, number: FloatArray, low: float, high: float) -> FloatArray:
-    """Return zeros by Newton steps on the phase, from the straight line through the window's ends."""
+    """Return zeros by Newton steps on the phase, from the middle of the window or just beyond the turning point."""
     target = (number - 0.25) * math.pi
-    x = np.maximum(np.full(index.shape, 0.5 * (low + high)), index + 1.5 * np.cbrt(index))
-    for _ in range(_NEWTON_STEPS):
-        phase, slope = _phase(index, x)
-        x = np.maximum(x - (phase - target) / slope, index + np.cbrt(index))
+    nearest = index + np.cbrt(index)
+    x = np.maximum(0.5 * (low + high), nearest)
+    for step in range(_LEADING_STEPS + _FULL_STEPS):
+        phase, slope = _leading_phase(index, x) if step < _LEADING_STEPS else _phase(index, x)
+        x = np.maximum(x - (phase - target) / slope, nearest)
     return x
 
 
+def _leading_phase(index: FloatArray, x: FloatArray) -> tuple[FloatArray, FloatArray]:
+    """Return the phase of J_nu beyond its turning point, plus pi/4, by its leading term, and the slope of that."""
+    root = np.sqrt((x - index) * (x + index))
+    return root - index * np.arctan2(root, index), root / x
+
+
 def _phase(index: FloatArray, x: FloatArray) -> tuple[FloatArray, FloatArray]:
-    """Return the phase of J_nu beyond its turning point, plus pi/4, and its leading slope."""
-    square = (x - index) * (x + index)
-    root = np.sqrt(square)
-    phase = root - index * np.arctan2(root, index)
-    inverse_square = 1.0 / square
+    """Return the same by the whole series, with the leading term's slope."""
+    phase, slope = _leading_phase(index, x)
+    inverse_square = 1.0 / ((x - index) * (x + index))
     ratio = index * index * inverse_square
     correction = np.zeros_like(x)
     for order in _PHASE_ORDERS:
@@ -254,4 +260,4 @@ def _phase(index: FloatArray, x: FloatArray) -> tuple[FloatArray, FloatArray]:
             polynomial += term
         correction *= inverse_square
         correction += polynomial
-    return phase - correction / root, root / x
+    return phase - correction / (slope * x), slope

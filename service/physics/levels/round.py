@@ -49,7 +49,8 @@ class RoundLevels:
         self._scale = (REDUCED_PLANCK / (0.5 * diameter)) ** 2 / (2.0 * mass)
         self._first = float(_table(shape)[1][0])
         self.lowest = self._scale * self._first**2
-        self.weyl = tuple(term / self._scale ** (power / 2.0) for power, term in enumerate(_WEYL[shape]))
+        unit = math.sqrt(self._scale)
+        self.weyl = tuple(term / unit**power for power, term in enumerate(_WEYL[shape]))
 
     def count_estimate(self, energy: float) -> float:
         """Return about how many distinct levels there are up to `energy`; without bound past the table's end [1]."""

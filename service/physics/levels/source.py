@@ -54,15 +54,23 @@ class Ladder:
 class LevelSource(Protocol):
     """The levels of one sample's confinement, from the lowest one up."""
 
-    lowest: float
-    """Energy of the lowest level above the band edge [J]."""
+    @property
+    def lowest(self) -> float:
+        """Energy of the lowest level above the band edge [J]."""
+        ...
 
-    weyl: tuple[float, ...] | None
-    """Weyl's count of orbital levels up to an energy E above the band edge: coefficients of E^(1/2) to the power 0, 1,
-    2, 3 [J^(-p/2)]; None where the ladder follows no such law."""
+    @property
+    def weyl(self) -> tuple[float, ...] | None:
+        """Weyl's count of orbital levels up to an energy above the band edge, or None where there is no such law.
 
-    closes: bool
-    """Whether the ladder ends, as that of a finite well does."""
+        The coefficients of the energy's square root to the power p = 0, 1, 2, 3 [J^(-p/2)].
+        """
+        ...
+
+    @property
+    def closes(self) -> bool:
+        """Whether the ladder ends, as that of a finite well does."""
+        ...
 
     def count_estimate(self, energy: float) -> float:
         """Return about how many levels have their edge up to `energy` above the lowest, without listing them [1]."""
