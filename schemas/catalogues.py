@@ -70,6 +70,9 @@ class LimitsEntry(Catalogue):
     default_energies = fields.Integer(
         required=True, metadata={"description": "Points of a curve where the request states none."}
     )
+    levels = fields.Integer(
+        required=True, metadata={"description": "Levels that one request may add up, over all samples and energies."}
+    )
     body_bytes = fields.Integer(required=True, metadata={"description": "Bytes of a request's body."})
 
 

@@ -26,7 +26,7 @@ class ThermalOccupancy:
     occupation : ndarray
         f(E) [1].
     thermal_broadening : ndarray
-        -df/dE; at T = 0 its regular part, zero [1/J].
+        -df/dE; at T = 0 its regular part, zero [J^-1].
     occupied_density : ndarray or None
         g(E) f(E); absent in box and sphere, whose states are lines: their levels carry it [J^-1 m^-3] ....
     levels : Levels or None

@@ -30,7 +30,7 @@ class Band:
     degeneracy: Values
 
     def parts(self) -> tuple[Values, Values, Values, Values]:
-        """Return masses and degeneracy, in the order of the attributes."""
+        """Return the masses [kg] and the degeneracy [1], in the order of the attributes."""
         return self.mass_x, self.mass_y, self.mass_z, self.degeneracy
 
     def take(self, rows: NDArray[np.intp] | NDArray[np.bool_]) -> "Band":

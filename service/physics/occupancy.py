@@ -80,7 +80,7 @@ def thermal_broadening(energy: Values, chemical_potential: Values, temperature: 
     Returns
     -------
     ndarray
-        -df/dE, of the common shape; at T = 0 its regular part, zero [1/J].
+        -df/dE, of the common shape; at T = 0 its regular part, zero [J^-1].
 
     References
     ----------

@@ -43,8 +43,6 @@ def stated_request(request: Request, most_bytes: int) -> Any:
 def _body(request: Request, most_bytes: int) -> bytes:
     """Return the body, read no further than one byte beyond the limit, whichever way it is sent."""
     length = request.content_length
-    if length is None and "chunked" not in request.headers.get("Transfer-Encoding", "").lower():
-        raise RequestError("length-required", "the request must state a Content-Length, or send its body in chunks")
     if length is not None and length > most_bytes:
         raise RequestError("body-too-large", f"the body has {length} bytes; the limit is {most_bytes}")
     body = request.stream.read(most_bytes + 1)

@@ -19,7 +19,6 @@ _JSON: Final = "application/json"
 _PROBLEMS: Final = {
     "400": "No JSON, or a request that is not well formed.",
     "406": "None of the forms asked for can be had.",
-    "411": "The request states no length.",
     "413": "The body is too large.",
     "415": "The body is of a type that this service does not read.",
     "422": "Understood but wrong, or beyond a published limit: every fault with a pointer.",

@@ -44,7 +44,6 @@ KINDS: Final = {
         Kind("not-found", 404, "There is nothing at this address"),
         Kind("method-not-allowed", 405, "This address does not take this method"),
         Kind("not-acceptable", 406, "The answer cannot be had in this form"),
-        Kind("length-required", 411, "The request must say how long its body is"),
         Kind("body-too-large", 413, "The body is too large"),
         Kind("unsupported-media-type", 415, "The body is of a type that this service does not read"),
         Kind("invalid-request", 422, "The request was understood, but is wrong"),

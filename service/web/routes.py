@@ -22,13 +22,7 @@ def register(app: Flask, settings: Settings) -> None:
     limits = Limits(settings.max_samples, settings.max_energies, settings.max_curve_points)
     for endpoint in ENDPOINTS:
         view = _view(endpoint, limits, settings.max_body_bytes)
-        app.add_url_rule(
-            f"/v1/{endpoint.name}",
-            endpoint.name,
-            view,
-            methods=["GET", "POST", "QUERY"],
-            provide_automatic_options=True,
-        )
+        app.add_url_rule(f"/v1/{endpoint.name}", endpoint.name, view, methods=["GET", "POST", "QUERY"])
 
 
 def _view(endpoint: Endpoint, limits: Limits, most_bytes: int) -> Callable[[], Response]:
