@@ -145,17 +145,17 @@ class Quantity(Member):
 
     def _in_range(self, stated: Stated) -> Stated:
         si = stated.si
-        if (self.least <= si <= self.most or (self.zero and si == 0.0)) and not (self.whole and si % 1.0):
+        if (self.lowest(stated.unit) <= si <= self.most or (self.zero and si == 0.0)) and not (self.whole and si % 1.0):
             return stated
         reason = self.range_in_words(stated.unit)
         raise ValidationError([reason] if stated.unit is _ONE and self.bare else {"value": [reason]})
 
     def _all_in_range(self, stated: Stated) -> Stated:
         si: Any = stated.si
-        lowest, highest = si.min(), si.max()
-        if self.least <= lowest and highest <= self.most and not self.whole:
+        least = self.lowest(stated.unit)
+        if least <= si.min() and si.max() <= self.most and not self.whole:
             return stated
-        good = (si >= self.least) & (si <= self.most)
+        good = (si >= least) & (si <= self.most)
         if self.zero:
             good |= si == 0.0
         if self.whole:
@@ -165,10 +165,14 @@ class Quantity(Member):
             stated.reason = self.range_in_words(stated.unit)
         return stated
 
+    def lowest(self, unit: Unit) -> float:
+        """Return the least value that is accepted in a unit's dimension, in SI."""
+        return self.least
+
     def range_in_words(self, unit: Unit) -> str:
         """Return the range that is accepted, as words."""
         si = DIMENSIONS[unit.dimension].si.symbol
-        ends = [f"{end:g}" + ("" if si == "1" else f" {si}") for end in (self.least, self.most)]
+        ends = [f"{end:g}" + ("" if si == "1" else f" {si}") for end in (self.lowest(unit), self.most)]
         number = "a whole number" if self.whole else "0, or" if self.zero else ""
         return " ".join(word for word in ("must be", number, "from", ends[0], "to", ends[1]) if word)
 

@@ -1,7 +1,7 @@
 """The sample of a request, whatever the endpoint: density, geometry, temperature, band."""
 
 from collections.abc import Mapping
-from typing import Any, Final, cast
+from typing import Any, ClassVar, Final, cast
 
 import orjson
 from marshmallow import ValidationError
@@ -136,14 +136,30 @@ class BandRequest(StrictSchema):
     )
 
 
+class CarrierDensity(Quantity):
+    """A density, from the smallest whose Fermi energy a double can hold."""
+
+    _least: ClassVar[Mapping[str, float]] = {
+        MEASURES["volume"]: 1e-280,
+        MEASURES["area"]: 1e-270,
+        # On a line the Fermi energy goes with the square of the density.
+        MEASURES["length"]: 1e-130,
+        MEASURES["count"]: 1e-280,
+    }
+
+    def lowest(self, unit: Unit) -> float:
+        """Return the least density of the unit's measure."""
+        return self._least[unit.dimension]
+
+
 class SampleRequest(StrictSchema):
     """What every calculator takes; each adds its own `output_units`."""
 
     later = _LATER
 
-    carrier_density = Quantity(
+    carrier_density = CarrierDensity(
         *MEASURES.values(),
-        least=1e-30,
+        least=1e-280,
         most=1e36,
         required=True,
         metadata={

@@ -18,6 +18,7 @@ from docstring_rule import faults
 ROOT = Path(__file__).parents[1]
 PROJECT: dict[str, Any] = tomllib.loads((ROOT / "pyproject.toml").read_text(encoding="utf-8"))
 SHOWN = {"README.md", "DEVELOPERS.md", "pyproject.toml", "Dockerfile", "service", "schemas", "tests"}
+PACKAGES = ("service", "schemas")
 MADE = re.compile(r"build|dist|.*\.egg-info")  # by installing or building; .gitignore has them too
 TEXT = {".py", ".md", ".toml", ".json", ".csv", ".txt", ".yaml", ".yml", ".html", ".css", ".js", ".conf", ".svg", ""}
 
@@ -72,6 +73,12 @@ def test_no_file_speaks_of_where_it_was_made(patterns: list[str]) -> None:
         if forbidden.search(line)
     ]
     assert not found, "\n".join(found)
+
+
+def test_no_module_is_longer_than_a_reader_holds() -> None:
+    long = {path: len(path.read_text(encoding="utf-8").splitlines()) for top in PACKAGES for path in modules(top)}
+    # About 300 lines is the rule; a tenth more is about.
+    assert {str(path.relative_to(ROOT)): lines for path, lines in long.items() if lines > 330} == {}
 
 
 # Docstrings of physics
@@ -174,6 +181,23 @@ def test_a_method_that_returns_numbers_names_their_unit() -> None:
 # Imports
 
 
+def test_physics_imports_numpy_special_functions_and_optimisers_alone() -> None:
+    allowed = re.compile(r"service\.physics(\.|$)|numpy(\.|$)|scipy\.(special|optimize)(\.|$)")
+    found = []
+    for path in modules("service/physics"):
+        for node in ast.walk(ast.parse(path.read_text(encoding="utf-8"))):
+            names = [alias.name for alias in node.names] if isinstance(node, ast.Import) else []
+            if isinstance(node, ast.ImportFrom):
+                module = node.module or ""
+                names = [f"scipy.{alias.name}" for alias in node.names] if module == "scipy" else [module]
+            found += [
+                f"{path.relative_to(ROOT)}: {name}"
+                for name in names
+                if name.partition(".")[0] not in sys.stdlib_module_names and not allowed.match(name)
+            ]
+    assert not found
+
+
 def lint_imports(folder: Path) -> subprocess.CompletedProcess[str]:
     """Run the import contracts in a folder."""
     program = "from importlinter.cli import lint_imports_command; lint_imports_command(['--no-cache'])"
@@ -198,7 +222,7 @@ def test_the_imports_keep_the_rules() -> None:
 )
 def test_an_import_against_the_rules_is_found(module: str, line: str, tmp_path: Path) -> None:
     pytest.importorskip("importlinter")
-    for name in ("service", "schemas"):
+    for name in PACKAGES:
         shutil.copytree(ROOT / name, tmp_path / name, ignore=shutil.ignore_patterns("__pycache__"))
     shutil.copy(ROOT / "pyproject.toml", tmp_path)
     with (tmp_path / module).open("a", encoding="utf-8") as file:
@@ -223,7 +247,7 @@ def test_every_data_file_is_declared_for_the_wheel() -> None:
     declared = PROJECT["tool"]["setuptools"]["package-data"]
     found = [
         str(path.relative_to(ROOT))
-        for package in ("service", "schemas")
+        for package in PACKAGES
         for path in (ROOT / package).rglob("*")
         if path.is_file() and path.suffix not in (".py", ".pyc", ".md") and "deploy" not in path.parts
         if not any(path.match(pattern) for pattern in declared.get(".".join(path.parent.relative_to(ROOT).parts), []))
@@ -232,7 +256,7 @@ def test_every_data_file_is_declared_for_the_wheel() -> None:
 
 
 def test_every_package_has_an_init_file() -> None:
-    folders = {path.parent for package in ("service", "schemas") for path in (ROOT / package).rglob("*.py")}
+    folders = {path.parent for package in PACKAGES for path in (ROOT / package).rglob("*.py")}
     assert [str(folder.relative_to(ROOT)) for folder in folders if not (folder / "__init__.py").exists()] == []
 
 

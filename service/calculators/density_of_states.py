@@ -6,10 +6,10 @@ from typing import Any, cast
 import numpy as np
 
 from service.calculators.cautions import Caution, curve_cautions, sample_cautions
-from service.calculators.cost import refuse_enormous
+from service.calculators.cost import refuse_enormous, within_levels
 from service.calculators.curve import DEFAULT_POINTS, default_energies, edge_on_grid, mean_over_cells, relative_energies
 from service.calculators.ladder import Levels, levels
-from service.calculators.sample import ElectronGas, Sample, electron_gas
+from service.calculators.sample import ElectronGas, Sample, electron_gas, refuse_vanishing
 from service.errors import Fault, SampleError
 from service.physics.broadening import Broadening
 from service.physics.values import FloatArray, Values
@@ -52,6 +52,7 @@ class DensityOfStates:
     cautions: tuple[Caution, ...]
 
 
+@within_levels
 def density_of_states(
     sample: Sample, energies: FloatArray | None = None, broadening: Broadening | None = None
 ) -> DensityOfStates:
@@ -78,6 +79,7 @@ def density_of_states(
     shape = line_shape(gas, broadening)
     lowest = gas.per_sample(states.lowest_level)
     fermi_energy = states.fermi_energy(gas.density)
+    refuse_vanishing(gas, fermi_energy)
     chemical_potential = states.chemical_potential(gas.density, sample.temperature)
     if energies is None:
         energies = default_energies(gas, fermi_energy, chemical_potential)

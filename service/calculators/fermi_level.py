@@ -7,8 +7,8 @@ from typing import Final
 import numpy as np
 
 from service.calculators.cautions import Caution, fermi_level_cautions
-from service.calculators.cost import refuse_enormous
-from service.calculators.sample import CLASSICAL_BELOW, DEGENERATE_ABOVE, Sample, electron_gas
+from service.calculators.cost import refuse_enormous, within_levels
+from service.calculators.sample import CLASSICAL_BELOW, DEGENERATE_ABOVE, Sample, electron_gas, refuse_vanishing
 from service.physics.constants import BOLTZMANN, REDUCED_PLANCK
 from service.physics.values import Values
 
@@ -69,6 +69,7 @@ class FermiLevel:
     cautions: tuple[Caution, ...]
 
 
+@within_levels
 def fermi_level(sample: Sample) -> FermiLevel:
     """Return the Fermi level of one sample or many.
 
@@ -82,9 +83,10 @@ def fermi_level(sample: Sample) -> FermiLevel:
     states, density = gas.states, gas.density
     lowest = gas.per_sample(states.lowest_level)
     fermi_energy = states.fermi_energy(density)
+    refuse_vanishing(gas, fermi_energy)
     chemical_potential = states.chemical_potential(density, sample.temperature)
     fermi_temperature = fermi_energy / BOLTZMANN
-    wavevector = (2.0 * gas.mass * (lowest + fermi_energy)) ** 0.5 / REDUCED_PLANCK
+    wavevector = (2.0 * gas.mass) ** 0.5 * (lowest + fermi_energy) ** 0.5 / REDUCED_PLANCK
     natural_density_of_states = None if states.free_dimensions == 0 else states.density_of_states(fermi_energy)
     return FermiLevel(
         fermi_energy=lowest + fermi_energy,

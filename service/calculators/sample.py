@@ -7,7 +7,7 @@ from typing import Any, Final
 import numpy as np
 from numpy.typing import NDArray
 
-from service.errors import Fault, Unsupported
+from service.errors import Fault, SampleError, Unsupported
 from service.physics.bands import FREE_AXES, Band
 from service.physics.constants import BOLTZMANN, ELECTRON_MASS
 from service.physics.filling.states import States
@@ -179,3 +179,21 @@ def _require_one_mass(sample: Sample) -> None:
     rows = np.flatnonzero(unequal)
     if rows.size:
         raise Unsupported(*(Fault(path, detail, row=int(row)) for row in rows))
+
+
+def refuse_vanishing(gas: ElectronGas, fermi_energy: Values) -> None:
+    """Refuse samples so dilute that their Fermi energy is beneath the smallest double; a box's may well be zero.
+
+    Raises
+    ------
+    SampleError
+        With every such sample.
+    """
+    if gas.states.free_dimensions == 0:
+        return
+    path, detail = ("carrier_density",), "is so dilute that its Fermi energy is beneath the smallest double"
+    if not isinstance(fermi_energy, np.ndarray):
+        if fermi_energy == 0.0:
+            raise SampleError(Fault(path, detail))
+    elif not fermi_energy.all():
+        raise SampleError(*(Fault(path, detail, row=int(row)) for row in np.flatnonzero(fermi_energy == 0.0)))

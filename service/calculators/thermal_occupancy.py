@@ -7,10 +7,10 @@ import numpy as np
 from numpy.typing import NDArray
 
 from service.calculators.cautions import Caution, curve_cautions, sample_cautions, step_cautions
-from service.calculators.cost import refuse_enormous
+from service.calculators.cost import refuse_enormous, within_levels
 from service.calculators.curve import DEFAULT_POINTS, default_energies, edge_on_grid, mean_over_cells, relative_energies
 from service.calculators.ladder import Levels, levels
-from service.calculators.sample import ElectronGas, Sample, electron_gas
+from service.calculators.sample import ElectronGas, Sample, electron_gas, refuse_vanishing
 from service.physics.occupancy import occupation, thermal_broadening, transition_width
 from service.physics.values import FloatArray, Values
 
@@ -63,6 +63,7 @@ class ThermalOccupancy:
     cautions: tuple[Caution, ...]
 
 
+@within_levels
 def thermal_occupancy(sample: Sample, energies: FloatArray | None = None) -> ThermalOccupancy:
     """Return the thermal occupancy of one sample or many.
 
@@ -83,6 +84,7 @@ def thermal_occupancy(sample: Sample, energies: FloatArray | None = None) -> The
     states = gas.states
     lowest = gas.per_sample(states.lowest_level)
     fermi_energy = states.fermi_energy(gas.density)
+    refuse_vanishing(gas, fermi_energy)
     chemical_potential = states.chemical_potential(gas.density, sample.temperature)
     if energies is None:
         energies = default_energies(gas, fermi_energy, chemical_potential)

@@ -13,7 +13,9 @@ Increasing = Callable[[Values], tuple[Values, Values]]
 """A function that returns its value and its slope."""
 
 
-def increasing_root(function: Increasing, low: Values, high: Values, tolerance: Values) -> Values:
+def increasing_root(
+    function: Increasing, low: Values, high: Values, tolerance: Values, start: Values | None = None
+) -> Values:
     r"""Return where an increasing function crosses zero, by Newton steps kept inside a shrinking bracket.
 
     .. math:: x_{k+1} = x_k - f(x_k) / f'(x_k)
@@ -28,6 +30,8 @@ def increasing_root(function: Increasing, low: Values, high: Values, tolerance: 
         A bracket: the function is not positive at `low` and not negative at `high` [1].
     tolerance : float or ndarray, shape (N,)
         The length of a step, or of a bracket, that ends the search [1].
+    start : float or ndarray, shape (N,), or None
+        Where the steps begin, inside the bracket; None for `low` [1].
 
     Returns
     -------
@@ -37,8 +41,8 @@ def increasing_root(function: Increasing, low: Values, high: Values, tolerance: 
     Notes
     -----
     Ends on the step, not on the residual: near a root the residual is rounding, and a bisection set off by it would
-    move a converged root. Newton steps start from `low`, from where they are monotone on a concave function such as
-    the logarithm of a density.
+    move a converged root. Newton steps start from `low` unless told otherwise, from where they are monotone on a
+    concave function such as the logarithm of a density.
 
     References
     ----------
@@ -51,12 +55,12 @@ def increasing_root(function: Increasing, low: Values, high: Values, tolerance: 
     """
     if isinstance(low, np.ndarray) or isinstance(high, np.ndarray) or isinstance(tolerance, np.ndarray):
         lows, highs, tolerances = np.broadcast_arrays(low, high, tolerance)
-        return _roots(function, lows.astype(np.float64), highs.astype(np.float64), tolerances)
-    return _root(function, low, high, tolerance)
+        first = lows if start is None else np.broadcast_to(start, lows.shape)
+        return _roots(function, lows.astype(np.float64), highs.astype(np.float64), tolerances, first.astype(np.float64))
+    return _root(function, low, high, tolerance, low if start is None else float(start))
 
 
-def _root(function: Increasing, low: float, high: float, tolerance: float) -> float:
-    point = low
+def _root(function: Increasing, low: float, high: float, tolerance: float, point: float) -> float:
     for _ in range(MOST_STEPS):
         value, slope = (float(part) for part in function(point))
         if value == 0.0:
@@ -77,8 +81,9 @@ def _root(function: Increasing, low: float, high: float, tolerance: float) -> fl
     return point
 
 
-def _roots(function: Increasing, low: FloatArray, high: FloatArray, tolerance: FloatArray) -> FloatArray:
-    point = low.copy()
+def _roots(
+    function: Increasing, low: FloatArray, high: FloatArray, tolerance: FloatArray, point: FloatArray
+) -> FloatArray:
     done = np.zeros(low.shape, dtype=bool)
     for _ in range(MOST_STEPS):
         value, slope = (np.asarray(part, dtype=np.float64) for part in function(point))

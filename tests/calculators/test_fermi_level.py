@@ -10,7 +10,7 @@ from hypothesis import strategies as st
 
 from samples import KINDS, batch, sample
 from service.calculators.fermi_level import UNBOUNDED, fermi_level
-from service.errors import Unsupported
+from service.errors import SampleError, Unsupported
 from service.physics.constants import BOLTZMANN, ELECTRON_MASS, REDUCED_PLANCK
 
 # Two roundings of a double at each of the handful of operations from input to result.
@@ -192,3 +192,27 @@ def test_arrays_stay_finite_and_of_one_length():
         value = getattr(many, field.name)
         if isinstance(value, np.ndarray):
             assert value.shape == (17,) and np.isfinite(value).all(), field.name
+
+
+def test_a_density_whose_fermi_energy_is_beneath_a_double_is_refused():
+    faint = sample("line", carrier_density=1e-200)
+    with pytest.raises(SampleError, match="dilute"):
+        fermi_level(faint)
+    with pytest.raises(SampleError) as together:
+        fermi_level(batch([sample("line"), faint]))
+    assert [fault.row for fault in together.value.faults] == [1]
+
+
+@pytest.mark.parametrize("kind", KINDS)
+@pytest.mark.parametrize("temperature", [0.0, 1e-12, 1e9])
+@pytest.mark.parametrize("density", [1e-130, 1.0, 1e36])
+def test_the_ends_of_the_accepted_ranges_are_answered_or_refused_and_never_break(kind, temperature, density):
+    extreme = sample(kind, carrier_density=density, temperature=temperature)
+    try:
+        result = fermi_level(extreme)
+    except SampleError:
+        return
+    for field in dataclasses.fields(result):
+        number = getattr(result, field.name)
+        if isinstance(number, float):
+            assert math.isfinite(number), field.name

@@ -40,7 +40,7 @@ def test_the_service_describes_itself():
     described = {
         "name": "fillmark",
         "version": "0.1.0",
-        "limits": {"samples": 1, "energies": 1, "curve_points": 1, "default_energies": 1, "body_bytes": 1},
+        "limits": {"samples": 1, "energies": 1, "curve_points": 1, "default_energies": 1, "levels": 1, "body_bytes": 1},
         "constants": {"edition": "CODATA 2022", "values": {"boltzmann": {"value": 1.380649e-23, "unit": "J/K"}}},
         "links": {"units": "/v1/units"},
     }

@@ -69,7 +69,9 @@ class IdealGas(States):
         if self.free_dimensions == 3:
             filled = np.cbrt(filled) ** 2 if isinstance(filled, np.ndarray) else math.cbrt(filled) ** 2
         elif self.free_dimensions == 1:
-            filled = filled * filled
+            # Squared last: the square of a dilute density alone is beneath the smallest double.
+            speed = filled * (REDUCED_PLANCK / self._mass**0.5)
+            return 2.0 * math.pi * speed * speed
         energy: Values = filled * (2.0 * math.pi * REDUCED_PLANCK**2) / self._mass
         return energy
 

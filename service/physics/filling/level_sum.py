@@ -99,6 +99,8 @@ class LevelSum(States):
     def fermi_energy(self, density: Values) -> float:
         density = float(density)
         high = self._most(density)
+        if high == 0.0:
+            return 0.0
         ladder = self._levels(high)
 
         def excess(energy: Values) -> tuple[float, float]:

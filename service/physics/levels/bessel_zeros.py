@@ -213,6 +213,14 @@ def zeros_between(family: Family, low: float, high: float) -> tuple[BesselZeros,
     return BesselZeros(zero[ascending], order[ascending], number[ascending].astype(np.int32)), below
 
 
+def zeros_up_to(family: Family, bound: float) -> tuple[float, float]:
+    """Return how many zeros lie up to a bound beyond the table, and how many orbital levels they are [1]."""
+    orders = np.arange(math.floor(bound) + 1, dtype=np.int32)
+    index = orders + (0.5 if family == "sphere" else 0.0)
+    counts = _zeros_up_to(index, _first_zeros(index), bound)
+    return float(np.sum(counts)), float(np.sum(orbital_degeneracy(family, orders) * counts))
+
+
 def _first_zeros(index: FloatArray) -> FloatArray:
     """Return the first seven zeros of each index; small indices, whose zeros lie far below, are taken as larger."""
     small = np.maximum(index, 100.0) ** (-2.0 / 3.0)
