@@ -5,8 +5,8 @@ import time
 
 import numpy as np
 import pytest
-from samples import batch, sample
 
+from samples import batch, sample
 from service.calculators.density_of_states import density_of_states
 from service.calculators.fermi_level import fermi_level
 from service.calculators.thermal_occupancy import thermal_occupancy
