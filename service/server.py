@@ -9,6 +9,7 @@ from pathlib import Path
 from types import FrameType
 from typing import Any, Final
 
+from gunicorn import util
 from gunicorn.app.base import BaseApplication
 
 from service.errors import SettingsError
@@ -55,6 +56,7 @@ def configuration(settings: Settings) -> dict[str, Any]:
         "max_requests": settings.max_requests,
         "max_requests_jitter": settings.max_requests // 10,
         "permit_unconventional_http_method": False,
+        "limit_request_line": 8190,  # the most that gunicorn takes: a link holds a request
         "loglevel": "warning",
         "when_ready": _say_where,
         "post_worker_init": _drain_on_term,
@@ -82,7 +84,15 @@ def serve(settings: Settings) -> None:
     _require_free(settings.host, settings.port)
     # Threads of a numerical library would starve the other workers.
     os.environ.setdefault("OPENBLAS_NUM_THREADS", "1")
+    util.write_error = _write_problem
     Server(settings).run()
+
+
+def _write_problem(client: socket.socket, status: int, reason: str, message: str) -> None:
+    """Refuse what never reaches the application, such as a link too long, as a problem rather than a page of HTML."""
+    body = json.dumps({"type": "about:blank", "title": reason, "status": status, "detail": message[:500]})
+    head = f"HTTP/1.1 {status} {reason}\r\nConnection: close\r\nContent-Type: application/problem+json\r\n"
+    util.write_nonblock(client, f"{head}Content-Length: {len(body)}\r\n\r\n{body}".encode("ascii"))
 
 
 def _require_free(host: str, port: int) -> None:

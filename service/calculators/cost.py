@@ -59,7 +59,7 @@ def refuse_enormous(gas: ElectronGas, points: int = 0) -> None:
         With the limit, the estimate, and what would fit.
     """
     each = gas.states.work(gas.density, gas.sample.temperature) * (_SOLVE + points) / _SOLVE
-    total = float(np.sum(gas.per_sample(each)))
+    total = each if isinstance(each, float) and gas.sample.count is None else float(np.sum(gas.per_sample(each)))
     if total <= MOST_LEVELS:
         return
     if math.isinf(total):

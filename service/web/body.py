@@ -14,6 +14,9 @@ _CHECKED_FOR_DUPLICATES: Final = 16_384
 """Bytes up to which a second parse looks for duplicate member names; above, the last of two names wins."""
 
 
+_PIECE: Final = 1 << 16
+
+
 class _DuplicateName(ValueError):
     """An object names a member twice."""
 
@@ -45,10 +48,16 @@ def _body(request: Request, most_bytes: int) -> bytes:
     length = request.content_length
     if length is not None and length > most_bytes:
         raise RequestError("body-too-large", f"the body has {length} bytes; the limit is {most_bytes}")
-    body = request.stream.read(most_bytes + 1)
-    if len(body) > most_bytes:
+    if length is not None:
+        return request.get_data(cache=False)
+    # A body in chunks states no length: it is read piece by piece, and one byte past the limit tells that it is larger.
+    pieces, left = [], most_bytes + 1
+    while left > 0 and (piece := request.stream.read(min(left, _PIECE))):
+        pieces.append(piece)
+        left -= len(piece)
+    if left == 0:
         raise RequestError("body-too-large", f"the body has more than {most_bytes} bytes, which is the limit")
-    return body
+    return b"".join(pieces)
 
 
 def parsed(body: bytes) -> Any:

@@ -25,7 +25,7 @@ def chosen_format(request: Request) -> str:
     RequestError
         Where nothing that the caller would take can be had.
     """
-    short = request.args.get("format")
+    short = request.args.get("format") if request.query_string else None
     if short is not None:
         if short in FORMATS:
             return FORMATS[short]

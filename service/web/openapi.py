@@ -20,6 +20,7 @@ _PROBLEMS: Final = {
     "400": "No JSON, or a request that is not well formed.",
     "406": "None of the forms asked for can be had.",
     "413": "The body is too large.",
+    "414": "The link is too long: send the request by POST or QUERY.",
     "415": "The body is of a type that this service does not read.",
     "422": "Understood but wrong, or beyond a published limit: every fault with a pointer.",
     "500": "Something went wrong here; nothing internal is shown.",
@@ -99,7 +100,7 @@ def _calculator(endpoint: Endpoint) -> dict[str, Any]:
             "operationId": endpoint.name,
             "parameters": [_FORMAT],
             "requestBody": {"required": True, "content": {_JSON: {"schema": schema, "examples": examples}}},
-            "responses": {"200": answered, **_refused(*_PROBLEMS)},
+            "responses": {"200": answered, **_refused("400", "406", "413", "414", "415", "422", "500")},
             "x-also-by": "QUERY",
         },
         "get": {
@@ -109,7 +110,7 @@ def _calculator(endpoint: Endpoint) -> dict[str, Any]:
             "responses": {
                 "200": answered,
                 "304": {"description": "What the caller has is still right."},
-                **_refused("400", "406", "422", "500"),
+                **_refused("400", "406", "414", "422", "500"),
             },
         },
     }
@@ -127,7 +128,7 @@ def _catalogue(name: str, summary: str, schema: str) -> dict[str, Any]:
                     "description": "The catalogue.",
                     "content": {_JSON: {"schema": {"$ref": f"#/components/schemas/{schema}"}}},
                 },
-                **_refused("400", "406"),
+                **_refused("400", "406", "414"),
             },
         }
     }

@@ -3,7 +3,7 @@
 from collections.abc import Callable
 from typing import Final
 
-from flask import Flask, Response, request
+from flask import Flask, Request, Response, request
 
 from schemas.limits import Limits
 from service.settings import Settings
@@ -12,6 +12,7 @@ from service.web.endpoints import ENDPOINTS, Endpoint, answer, entity_tag, load
 from service.web.negotiation import chosen_format
 from service.web.problems import RequestError
 
+PARAMETERS: Final = ("request", "format")
 SAFE: Final = ("GET", "HEAD", "QUERY")
 CACHE_CONTROL: Final = "public, max-age=86400"
 """An answer depends on its request and this version alone, and its validator on both."""
@@ -26,35 +27,28 @@ def register(app: Flask, settings: Settings) -> None:
 
 
 def _view(endpoint: Endpoint, limits: Limits, most_bytes: int) -> Callable[[], Response]:
-    allowed = {"request", "format"}
-
     def view() -> Response:
-        if request.query_string:
-            _check_parameters(allowed)
-        media_type = chosen_format(request)
-        loaded = load(endpoint, stated_request(request, most_bytes), limits)
+        # The proxy looks its request up at every use: once is enough.
+        current: Request = request._get_current_object()  # type: ignore[attr-defined]
+        if current.query_string:
+            _check_parameters(current)
+        media_type = chosen_format(current)
+        loaded = load(endpoint, stated_request(current, most_bytes), limits)
         tag = entity_tag(endpoint, loaded, media_type)
-        safe = request.method in SAFE
-        if safe and "If-None-Match" in request.headers and request.if_none_match.contains_weak(tag):
-            made = Response(status=304)
-        else:
-            made = Response(answer(endpoint, loaded), content_type=media_type)
-        headers = made.headers
-        headers["ETag"] = f'"{tag}"'
-        headers["Vary"] = "Accept"
-        headers["Accept-Query"] = MEDIA_TYPE
-        if safe:
+        headers = {"ETag": f'"{tag}"', "Vary": "Accept", "Accept-Query": MEDIA_TYPE}
+        if current.method in SAFE:
             headers["Cache-Control"] = CACHE_CONTROL
-        return made
+            if "If-None-Match" in current.headers and current.if_none_match.contains_weak(tag):
+                return Response(status=304, headers=headers)
+        return Response(answer(endpoint, loaded), content_type=media_type, headers=headers)
 
     return view
 
 
-def _check_parameters(allowed: set[str]) -> None:
-    for name in request.args:
-        if name not in allowed:
-            raise RequestError(
-                "bad-request", f"the query parameter {name[:40]!r} is not known; there is request, format"
-            )
-    if "request" in request.args and request.method not in ("GET", "HEAD"):
-        raise RequestError("bad-request", f"{request.method} takes the request in its body, not in the query")
+def _check_parameters(current: Request) -> None:
+    for name in current.args:
+        if name not in PARAMETERS:
+            detail = f"the query parameter {name[:40]!r} is not known; there is {', '.join(PARAMETERS)}"
+            raise RequestError("bad-request", detail)
+    if "request" in current.args and current.method not in ("GET", "HEAD"):
+        raise RequestError("bad-request", f"{current.method} takes the request in its body, not in the query")

@@ -36,7 +36,7 @@ class Kernel:
     blur : float
         How far above and below the real axis its singularities lie: pi kT for occupations; 0 for sharp states.
     widest : float
-        Half width of the widest cluster within `reach` of the energies: an exponential of more decades needs more points.
+        Half width of the widest cluster within `reach`: over more decades of an exponential 22 points are too few.
     reach : float
         How far above the energies the levels still count; infinite for a function without a cut-off.
     """

@@ -75,8 +75,9 @@ class Cylinder(RoundWalls):
         place = int(np.searchsorted(held, filled, side="right")) - 1
         floor = float(levels[place])
         ceiling = float(levels[place + 1]) if place + 1 < levels.size else high
-        below = edges <= floor
-        depth, weights = floor - edges[below], weights[below] / (_ROOM * filled)
+        # A level found anew may differ from its first finding in the last digit.
+        below = edges <= floor * (1.0 + 1e-12)
+        depth, weights = np.maximum(floor - edges[below], 0.0), weights[below] / (_ROOM * filled)
 
         def excess(root: Values) -> tuple[float, float]:
             # In the root of the distance a level just opened gives a straight line, and all others curve upwards.
@@ -160,4 +161,3 @@ class Cylinder(RoundWalls):
     def _held_above(self, start: FloatArray, potential: FloatArray, warmth: float) -> FloatArray:
         tails = fermi_dirac_tail(-0.5, potential / warmth, np.maximum(start, 0.0) / warmth)
         return math.sqrt(warmth) * np.asarray(tails)
-

@@ -9,9 +9,9 @@ from numpy.typing import NDArray
 from service.physics.broadening import Broadening
 from service.physics.constants import BOLTZMANN, REDUCED_PLANCK
 from service.physics.fermi_dirac import fermi_dirac_integral
+from service.physics.filling.clusters import Kernel
 from service.physics.filling.round_continuum import RoundContinuum
 from service.physics.filling.round_curve import REACH, Function, occupations, over_levels, spread
-from service.physics.filling.clusters import Kernel
 from service.physics.filling.round_ladder import ROUNDING, round_ladder
 from service.physics.filling.states import States
 from service.physics.levels.bessel_zeros import Family
@@ -91,7 +91,7 @@ class RoundWalls(States):
 
     def _thermal(self, potential: Values, temperature: Values, derivative: int) -> Values:
         warmth = self._warmth(temperature)
-        order, scale = self._half - 1.0 - derivative, warmth ** (self._half - derivative)
+        order, scale = self._half - 1.0 - derivative, math.pow(warmth, self._half - derivative)
         return self._over(
             potential,
             occupations(warmth),
@@ -116,7 +116,7 @@ class RoundWalls(States):
         eta = (potential - edges) / warmth
         held = edges * np.asarray(fermi_dirac_integral(self._half - 1.0, eta))
         moving = self._half * warmth * np.asarray(fermi_dirac_integral(self._half, eta))
-        return self._unit * self._room * warmth**self._half * float(np.sum(weights * (held + moving)))
+        return self._unit * self._room * math.pow(warmth, self._half) * float(np.sum(weights * (held + moving)))
 
     def carriers_above(self, energy: Values, chemical_potential: Values, temperature: Values) -> float:
         warmth = self._warmth(temperature)
@@ -149,4 +149,6 @@ class RoundWalls(States):
         levels = self._levels
         total = max(1, round(levels.entries_up_to(max(highest, 0.0) / self._unit * (1.0 + ROUNDING))))
         listed = min(total, most)
-        return Ladder(levels.numbers[:listed], self._unit * levels.edge[:listed], levels.degeneracy[:listed]), total
+        return Ladder(
+            levels.numbers[:listed].astype(np.int64), self._unit * levels.edge[:listed], levels.degeneracy[:listed]
+        ), total

@@ -34,7 +34,7 @@ _ROUNDING: Final = 1e-13
 
 
 def smooth_density(family: Family, wavenumber: FloatArray) -> tuple[FloatArray, float, float]:
-    """Return the smooth orbital levels per k R, their constant term at the band edge, and a in the last term a / k R."""
+    """Return the smooth orbital levels per k R, the constant term of their count, and a in its last term a / k R."""
     dimensions = 2 if family == "cylinder" else 3
     first, second, third, fourth, fifth = _TERMS[family]
     if dimensions == 2:
@@ -55,9 +55,9 @@ class RoundContinuum:
     Notes
     -----
     What is left out are the shells: oscillations from the closed orbits, the shortest of which runs along a diameter
-    and back, 4 R. Warmth damps each by X / sinh X with X = pi kT L / (2 R sqrt(E)), so that the continuum is exact to the
-    last digit once X passes 40. At T = 0 the bound is the envelope of what the zeros up to 1000 show, doubled, carried
-    on by the power of k R that the orbits' amplitudes follow.
+    and back, 4 R. Warmth damps each by X / sinh X with X = pi kT L / (2 R sqrt(E)), so that the continuum is exact to
+    the last digit once X passes 40. At T = 0 the bound is twice the envelope of what the zeros up to 1250 show, carried
+    on by the power of k R that it follows there, of the orbits' amplitudes.
 
     References
     ----------
@@ -84,7 +84,7 @@ class RoundContinuum:
     def ground_energy(self, energy: float) -> float:
         """Return the energy of all carriers below an energy at T = 0."""
         return sum(
-            term * (1.5 - k / 2.0) / math.gamma(3.5 - k / 2.0) * energy ** (2.5 - k / 2.0)
+            term * (1.5 - k / 2.0) / math.gamma(3.5 - k / 2.0) * math.pow(energy, 2.5 - k / 2.0)
             for k, term in enumerate(_TERMS[self.family])
         )
 
@@ -100,7 +100,7 @@ class RoundContinuum:
         """Return the energy of all carriers at kT = `warmth`."""
         eta = potential / warmth
         return sum(
-            term * (1.5 - k / 2.0) * warmth ** (2.5 - k / 2.0) * float(fermi_dirac_integral(1.5 - k / 2.0, eta))
+            term * (1.5 - k / 2.0) * math.pow(warmth, 2.5 - k / 2.0) * float(fermi_dirac_integral(1.5 - k / 2.0, eta))
             for k, term in enumerate(_TERMS[self.family])
         )
 
@@ -108,7 +108,7 @@ class RoundContinuum:
         """Return what is held above an energy far from the band edge, where the last two terms have no states."""
         return sum(
             term
-            * warmth ** (1.5 - k / 2.0)
+            * math.pow(warmth, 1.5 - k / 2.0)
             * float(fermi_dirac_tail(0.5 - k / 2.0, potential / warmth, energy / warmth))
             for k, term in enumerate(_TERMS[self.family][:3])
         )
@@ -158,4 +158,4 @@ class RoundContinuum:
         factor, power = _SWING[self.family]
         damping = 2.0 * math.pi * warmth / wavenumber
         damped = 1.0 if damping < 1e-3 else damping / math.sinh(min(damping, 300.0))
-        return _ROUNDING + factor * wavenumber**power * damped
+        return _ROUNDING + factor * math.pow(wavenumber, power) * damped

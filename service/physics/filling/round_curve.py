@@ -31,6 +31,9 @@ the highest energy, so that it is right to the last digit."""
 Function = Callable[[FloatArray], FloatArray]
 """What one level gives at energies above its edge, or all smooth states at energies above the band edge."""
 
+Functions = Callable[[FloatArray], tuple[FloatArray, ...]]
+"""The same for several things at once."""
+
 Points = Callable[[float, float, Kernel], tuple[FloatArray, FloatArray]]
 
 
@@ -39,16 +42,20 @@ def occupations(warmth: float) -> Kernel:
     return Kernel(math.pi * warmth, 4.0 * warmth, REACH * warmth)
 
 
-def over_levels(ladder: RoundLadder, energy: FloatArray, kernel: Kernel, level: Function, smooth: Function) -> FloatArray:
+def over_levels(
+    ladder: RoundLadder, energy: FloatArray, kernel: Kernel, level: Function, smooth: Function
+) -> FloatArray:
     """Return the sum over the levels at each energy.
+
+    One energy alone is summed at any size; on a curve beyond the ladder, where a sum lists the levels anew for each
+    energy, the smooth states stand in.
 
     Parameters
     ----------
     ladder : RoundLadder
         The levels.
     energy : ndarray
-        From the lowest level. One energy alone is summed at any size; on a curve beyond the ladder, where a sum lists
-        the levels anew for each energy, the smooth states stand in.
+        From the lowest level.
     kernel : Kernel
         What the function is like.
     level : callable
@@ -61,7 +68,12 @@ def over_levels(ladder: RoundLadder, energy: FloatArray, kernel: Kernel, level: 
     ndarray
         The sums, of the same shape.
     """
+    return _sums(ladder, energy, kernel, lambda above: (level(above),), lambda energy: (smooth(energy),))[0]
 
+
+def _sums(
+    ladder: RoundLadder, energy: FloatArray, kernel: Kernel, level: Functions, smooth: Functions
+) -> tuple[FloatArray, ...]:
     def inside(low: float, high: float) -> bool:
         return high + kernel.reach <= ladder.end or (energy.size == 1 and ladder.reaches(low, high, kernel))
 
@@ -73,13 +85,14 @@ def _in_bins(
     kernel: Kernel,
     points_of: Points,
     inside: Callable[[float, float], bool],
-    level: Function,
-    otherwise: Function,
-) -> FloatArray:
+    level: Functions,
+    otherwise: Functions,
+) -> tuple[FloatArray, ...]:
+    """Return the sums, the energies taken together that lie close together."""
     flat = energy.ravel()
     order = np.argsort(flat)
     ascending = flat[order]
-    sums = np.empty_like(flat)
+    parts: list[tuple[FloatArray, ...]] = []
     at = 0
     while at < flat.size:
         low = float(ascending[at])
@@ -88,62 +101,84 @@ def _in_bins(
         high = float(part[-1])
         if inside(low, high):
             edges, weights = points_of(low, high, kernel)
-            sums[order[at:till]] = level(part[:, None] - edges) @ weights
+            parts.append(tuple(values @ weights for values in level(part[:, None] - edges)))
         else:
-            sums[order[at:till]] = otherwise(part)
+            parts.append(otherwise(part))
         at = till
-    return sums.reshape(energy.shape)
+    sums = []
+    for column in zip(*parts, strict=True):
+        ordered = np.empty_like(flat)
+        ordered[order] = np.concatenate(column)
+        sums.append(ordered.reshape(energy.shape))
+    return tuple(sums)
 
 
 def spread(
     ladder: RoundLadder, continuum: RoundContinuum, dimensions: int, energy: FloatArray, kind: str, width: float
 ) -> tuple[FloatArray, FloatArray]:
-    """Return the levels' density of states convolved with a line shape, and its integral, a Lorentzian's from 0."""
+    """Return the levels' density of states convolved with a line shape, and its integral, a Lorentzian's from 0.
 
-    def level(part: int) -> Function:
-        scale = width ** (dimensions / 2.0 - 1.0 + part)
-        return lambda above: scale * np.asarray(spread_level(dimensions, kind, above / width)[part])
+    Parameters
+    ----------
+    ladder : RoundLadder
+        The levels.
+    continuum : RoundContinuum
+        Their smooth part.
+    dimensions : int
+        D, the free dimensions of each level: 1 or 0.
+    energy : ndarray
+        From the lowest level.
+    kind : str
+        ``gaussian``, ``lorentzian`` or ``thermal``.
+    width : float
+        The width.
 
-    def smooth(part: int) -> Function:
-        return lambda energy: continuum.spread(energy, kind, width, ladder.lowest)[part]
+    Returns
+    -------
+    tuple of ndarray
+        The density and its integral, each of the shape of `energy`.
+    """
+    scale = width ** (dimensions / 2.0 - 1.0)
+
+    def level(above: FloatArray) -> tuple[FloatArray, ...]:
+        shape, area = spread_level(dimensions, kind, above / width)
+        return scale * np.asarray(shape), scale * width * np.asarray(area)
+
+    def smooth(energy: FloatArray) -> tuple[FloatArray, ...]:
+        return continuum.spread(energy, kind, width, ladder.lowest)
 
     if kind == "lorentzian":
         return _lorentzian(ladder, energy, width, level, smooth)
     kernel = occupations(width) if kind == "thermal" else Kernel(width, width, GAUSSIAN_REACH * width)
-    density, integral = (over_levels(ladder, energy, kernel, level(part), smooth(part)) for part in (0, 1))
+    density, integral = _sums(ladder, energy, kernel, level, smooth)
     return density, integral
 
 
 def _lorentzian(
-    ladder: RoundLadder,
-    energy: FloatArray,
-    width: float,
-    level: Callable[[int], Function],
-    smooth: Callable[[int], Function],
+    ladder: RoundLadder, energy: FloatArray, width: float, level: Functions, smooth: Functions
 ) -> tuple[FloatArray, FloatArray]:
-    """Return the sums whose tails take in every level to infinity: levels to the ladder's end, then the smooth count."""
-    kernel = Kernel(width, math.inf, math.inf)
+    """Return the sums whose tails take in every level: those to the ladder's end, then the smooth count."""
 
-    def sums(energy: FloatArray, part: int) -> FloatArray:
+    def sums(energy: FloatArray) -> tuple[FloatArray, ...]:
         return _in_bins(
             energy,
-            kernel,
+            Kernel(width, math.inf, math.inf),
             ladder.endless_points,
             lambda low, high: high <= ladder.endless,
-            level(part),
-            lambda above: smooth(part)(above + ladder.lowest),
+            level,
+            lambda above: smooth(above + ladder.lowest),
         )
 
-    density, integral = sums(energy, 0), sums(energy, 1)
+    density, integral = sums(energy)
     inside = energy <= ladder.endless
     if inside.any():
         edges, counts = ladder.beyond
         within = energy[inside]
         domain = [min(0.0, float(within.min())), max(1.0, float(within.max()))]
         beyond = np.polynomial.Chebyshev.interpolate(
-            lambda energies: level(0)(energies[:, None] - edges) @ counts, _DEGREE, domain
+            lambda energies: level(energies[:, None] - edges)[0] @ counts, _DEGREE, domain
         )
         # Far below an edge the two ends of the integral nearly cancel: integrated as a polynomial they do not.
         density[inside] += beyond(within)
-        integral[inside] += beyond.integ(lbnd=0.0)(within) - sums(np.zeros(1), 1)
+        integral[inside] += beyond.integ(lbnd=0.0)(within) - sums(np.zeros(1))[1]
     return density, integral

@@ -63,7 +63,7 @@ class ShellBalance:
 
 
 def _logarithm(distance: FloatArray, room: FloatArray, constant: float) -> tuple[float, float]:
-    """Return ln of a constant and all that sits at distances on the wrong side of the potential, and minus its slope."""
+    """Return ln of a constant and of all on the wrong side of the potential, at distances, and minus its slope."""
     nearest = max(float(distance.min()), 0.0) if distance.size and constant == 0.0 else 0.0
     decay = np.exp(-np.abs(distance))
     share = np.where(distance > 0.0, np.exp(nearest - np.maximum(distance, nearest)), 1.0) / (1.0 + decay)

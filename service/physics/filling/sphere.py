@@ -112,7 +112,7 @@ class Sphere(RoundWalls):
     def warm_chemical_potential(self, density: Values, temperature: Values) -> float:
         filled, warmth = float(density) / self._room, self._warmth(temperature)
         levels = self._levels
-        highest, following, held, capacity = self._shell(filled)
+        highest, following, held, _ = self._shell(filled)
         low, high = highest - _HOLES_REACH * warmth, following + _HOLES_REACH * warmth
         if levels.entries_within(low, high) <= _BALANCED:
             return self._unit * self._balanced(highest, held, low, high, warmth)

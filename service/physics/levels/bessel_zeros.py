@@ -81,9 +81,8 @@ def orbital_degeneracy(family: Family, order: NDArray[np.int32]) -> FloatArray:
     >>> orbital_degeneracy("sphere", np.arange(3, dtype=np.int32)).tolist()
     [1.0, 3.0, 5.0]
     """
-    if family == "sphere":
-        return 2.0 * order + 1.0
-    return np.where(order > 0, 2.0, 1.0)
+    orders = order.astype(np.float64)
+    return 2.0 * orders + 1.0 if family == "sphere" else np.where(orders > 0.0, 2.0, 1.0)
 
 
 def bessel_zeros(family: Family, bound: float, most: float = 2e6) -> BesselZeros:
@@ -197,16 +196,14 @@ def zeros_between(family: Family, low: float, high: float) -> tuple[BesselZeros,
     """
     if low < TABLE_END:
         raise ValueError(f"the window begins at {low}, where the table serves: up to {TABLE_END}")
-    half = 0.5 if family == "sphere" else 0.0
-    orders = np.arange(math.floor(high - half) + 1, dtype=np.int32)
-    index = orders + half
+    orders, index = _orders_up_to(family, high)
     early = _first_zeros(index)
     first, last = _zeros_up_to(index, early, low), _zeros_up_to(index, early, high)
     below = float(np.sum(orbital_degeneracy(family, orders) * first))
     counts = (last - first).astype(np.intp)
-    order = np.repeat(orders, counts)
+    order, indices = np.repeat(orders, counts), np.repeat(index, counts)
     number = np.arange(counts.sum()) - np.repeat(np.cumsum(counts) - counts, counts) + np.repeat(first, counts) + 1.0
-    zero = _zeros_by_phase(order + half, number, low, high)
+    zero = _zeros_by_phase(indices, number, low, high)
     near = number <= _FIRST_ZEROS
     zero[near] = early[number[near].astype(np.intp) - 1, order[near]]
     ascending = np.argsort(zero)
@@ -215,17 +212,22 @@ def zeros_between(family: Family, low: float, high: float) -> tuple[BesselZeros,
 
 def zeros_up_to(family: Family, bound: float) -> tuple[float, float]:
     """Return how many zeros lie up to a bound beyond the table, and how many orbital levels they are [1]."""
-    orders = np.arange(math.floor(bound) + 1, dtype=np.int32)
-    index = orders + (0.5 if family == "sphere" else 0.0)
+    orders, index = _orders_up_to(family, bound)
     counts = _zeros_up_to(index, _first_zeros(index), bound)
     return float(np.sum(counts)), float(np.sum(orbital_degeneracy(family, orders) * counts))
 
 
+def _orders_up_to(family: Family, bound: float) -> tuple[NDArray[np.int32], FloatArray]:
+    """Return the orders whose zeros may lie up to a bound, and the index nu of each."""
+    orders = np.arange(math.floor(bound) + 1, dtype=np.int32)
+    return orders, orders.astype(np.float64) + (0.5 if family == "sphere" else 0.0)
+
+
 def _first_zeros(index: FloatArray) -> FloatArray:
     """Return the first seven zeros of each index; small indices, whose zeros lie far below, are taken as larger."""
-    small = np.maximum(index, 100.0) ** (-2.0 / 3.0)
-    ratio = np.polynomial.polynomial.polyval(small, table(_FILE, "first_zeros").T)
-    return np.asarray(ratio * index)
+    small: FloatArray = np.maximum(index, 100.0) ** (-2.0 / 3.0)
+    ratio: FloatArray = np.polynomial.polynomial.polyval(small, table(_FILE, "first_zeros").T)
+    return ratio * index
 
 
 def _zeros_up_to(index: FloatArray, early: FloatArray, x: float) -> FloatArray:
