@@ -65,6 +65,8 @@ class StrictSchema(Schema):
             raise ValidationError(f"must be an object, not {shortened(data)}")
         loaded, errors = {}, {}
         for name, field in self.load_fields.items():
+            if name not in data and not field.required:
+                continue
             try:
                 value = field.deserialize(data.get(name, missing), name, data)
             except ValidationError as error:

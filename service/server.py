@@ -1,5 +1,6 @@
 """The server: gunicorn with a configuration of ours, and what it says when it starts."""
 
+import gc
 import json
 import os
 import signal
@@ -37,10 +38,18 @@ class Server(BaseApplication):  # type: ignore[misc]
             self.cfg.set(name, value)
 
     def load(self) -> Any:
-        """Return the application, everything that a request needs imported."""
+        """Return the application, warm: what a first request would import and read is there before the fork."""
         from service.web.app import create_app
 
-        return create_app(self._settings)
+        app = create_app(self._settings)
+        client = app.test_client()
+        for path in ("fermi-level", "density-of-states", "thermal-occupancy"):
+            client.post(f"/v1/{path}", json=_EXAMPLE)
+        # The collector need not walk, in every worker and again and again, what lives as long as the process; and
+        # pages that it does not touch stay shared.
+        gc.collect()
+        gc.freeze()
+        return app
 
 
 def configuration(settings: Settings) -> dict[str, Any]:

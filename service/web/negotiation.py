@@ -31,7 +31,7 @@ def chosen_format(request: Request) -> str:
             return FORMATS[short]
         later = "comes with a later version" if short in COMING else "is not known"
         raise _not_acceptable(f"the format {short[:40]!r} {later}")
-    if request.headers.get("Accept", "").strip() in _PLAIN:
+    if request.environ.get("HTTP_ACCEPT", "").strip() in _PLAIN:
         return JSON
     best = request.accept_mimetypes.best_match(list(FORMATS.values()))
     if best is None:

@@ -112,7 +112,7 @@ class HardWallFilm(States):
         eta, spacing = chemical_potential / thermal_energy, self._scale / thermal_energy
         if isinstance(eta, np.ndarray) or isinstance(spacing, np.ndarray):
             return film_sum.occupation_sum(*_flat(eta, spacing))
-        return film_sum_one.occupation_sum(eta, spacing)
+        return film_sum_one.occupation_sum(eta, spacing)[:2]
 
     def energy_density(self, chemical_potential: Values, temperature: Values) -> Values:
         thermal_energy = BOLTZMANN * temperature

@@ -1,6 +1,7 @@
 """The levels of round hard walls in units of hbar^2 / 2 m R^2: one ladder for all cylinders, one for all spheres."""
 
 import math
+from copy import copy
 from functools import cache
 from typing import Final
 
@@ -65,6 +66,7 @@ class RoundLadder:
         self.energy = np.concatenate([[0.0], np.cumsum(self.degeneracy * self.edge)])
         self.end = LADDER_END**2 - self.lowest
         self._clusters = LevelClusters(self.edge, self.degeneracy)
+        self._window: tuple[float, float, FloatArray, FloatArray] | None = None
 
     def _energy(self, zero: FloatArray) -> FloatArray:
         first = math.sqrt(self.lowest)
@@ -135,11 +137,16 @@ class RoundLadder:
         """Return energies and weights that stand for the levels in a sum: see `LevelClusters`.
 
         Beyond the ladder: the levels of a window, one by one, with a taper at its lower end, below which the smooth
-        count serves.
+        count serves. The last window is remembered, for it serves every function of energies inside it.
         """
         top = high + kernel.reach
         if top <= self.end:
             return self._clusters.points(low, high, kernel)
+        if self._window is None or low < self._window[0] or top > self._window[1]:
+            self._window = low, top, *self._tapered_window(low, top)
+        return self._window[2:]
+
+    def _tapered_window(self, low: float, top: float) -> tuple[FloatArray, FloatArray]:
         edge, degeneracy, _ = self.between(self._window_start(low), top)
         center = self._wavenumber(low) - _HALF_SPAN
         edges, counts = _below(self.family, center, self._wavenumber(low))
@@ -161,9 +168,13 @@ class RoundLadder:
 
 
 @cache
-def round_ladder(family: Family) -> RoundLadder:
-    """Return the ladder of a shape, built once and shared."""
+def _shared(family: Family) -> RoundLadder:
     return RoundLadder(family)
+
+
+def round_ladder(family: Family) -> RoundLadder:
+    """Return the ladder of a shape for one sample: built once, all arrays shared, with a window of its own."""
+    return copy(_shared(family))
 
 
 def _taper(past: FloatArray) -> FloatArray:

@@ -73,6 +73,9 @@ class Sphere(RoundWalls):
             edges, degeneracy, room = levels.edge, levels.degeneracy, levels.room[1:]
         else:
             guess = self._smooth_potential(filled, 0.0)
+            if not levels.reaches(guess, guess, SHARP):
+                self._by_continuum(guess, 0.0)
+                return guess, guess, 0.0, 1.0
             while True:
                 edges, degeneracy, below = levels.between(guess - margin, guess + margin)
                 room = below + np.cumsum(degeneracy)
@@ -90,6 +93,10 @@ class Sphere(RoundWalls):
         filled = float(density) / self._room
         highest, _, held, _ = self._shell(filled)
         levels = self._levels
+        if not levels.reaches(highest, highest, SHARP):
+            from_edge = highest + levels.lowest
+            total = self._continuum.ground_energy(from_edge) - levels.lowest * filled
+            return self._unit * self._room * total
         if highest < levels.end:
             below = float(levels.energy[np.searchsorted(levels.edge, highest)])
         else:
@@ -111,14 +118,14 @@ class Sphere(RoundWalls):
 
     def warm_chemical_potential(self, density: Values, temperature: Values) -> float:
         filled, warmth = float(density) / self._room, self._warmth(temperature)
-        levels = self._levels
+        levels, kernel = self._levels, occupations(warmth)
+        guess = self._smooth_potential(filled, warmth)
+        if not levels.reaches(guess, guess, kernel):
+            return self._by_continuum(guess, warmth)
         highest, following, held, _ = self._shell(filled)
         low, high = highest - _HOLES_REACH * warmth, following + _HOLES_REACH * warmth
         if levels.entries_within(low, high) <= _BALANCED:
             return self._unit * self._balanced(highest, held, low, high, warmth)
-        guess, kernel = self._smooth_potential(filled, warmth), occupations(warmth)
-        if not levels.reaches(guess, guess, kernel):
-            return self._by_continuum(guess, warmth)
         return self._unit * self._summed(filled, warmth, guess, kernel)
 
     def _balanced(self, highest: float, held: float, low: float, high: float, warmth: float) -> float:

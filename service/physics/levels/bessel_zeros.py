@@ -192,7 +192,7 @@ def zeros_between(family: Family, low: float, high: float) -> tuple[BesselZeros,
     --------
     >>> zeros, below = zeros_between("sphere", 1000.0, 1000.1)
     >>> float(zeros.zero[0].round(9)), below
-    (1000.003434302, 70491106.0)
+    (1000.001644262, 70488773.0)
     """
     if low < TABLE_END:
         raise ValueError(f"the window begins at {low}, where the table serves: up to {TABLE_END}")
@@ -225,14 +225,13 @@ def _orders_up_to(family: Family, bound: float) -> tuple[NDArray[np.int32], Floa
 
 def _first_zeros(index: FloatArray) -> FloatArray:
     """Return the first seven zeros of each index; small indices, whose zeros lie far below, are taken as larger."""
-    small: FloatArray = np.maximum(index, 100.0) ** (-2.0 / 3.0)
-    ratio: FloatArray = np.polynomial.polynomial.polyval(small, table(_FILE, "first_zeros").T)
-    return ratio * index
+    small = np.power(np.maximum(index, 100.0), -2.0 / 3.0)
+    return np.asarray(index * np.polynomial.polynomial.polyval(small, table(_FILE, "first_zeros").T))
 
 
 def _zeros_up_to(index: FloatArray, early: FloatArray, x: float) -> FloatArray:
     """Return how many zeros of each index lie at or below x."""
-    count = np.sum(early <= x, axis=0).astype(np.float64)
+    count: FloatArray = np.sum(early <= x, axis=0).astype(np.float64)
     many = count == _FIRST_ZEROS
     phase, _ = _phase(index[many], np.full(int(many.sum()), float(x)))
     count[many] = np.maximum(np.floor(phase / math.pi + 0.25), _FIRST_ZEROS)
