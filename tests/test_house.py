@@ -19,7 +19,7 @@ ROOT = Path(__file__).parents[1]
 PROJECT: dict[str, Any] = tomllib.loads((ROOT / "pyproject.toml").read_text(encoding="utf-8"))
 SHOWN = {"README.md", "DEVELOPERS.md", "pyproject.toml", "Dockerfile", "service", "schemas", "tests"}
 PACKAGES = ("service", "schemas")
-MADE = re.compile(r"build|dist|.*\.egg-info")  # by installing or building; .gitignore has them too
+MADE = re.compile(r"build|dist|.*\.egg-info|\.coverage.*")  # .gitignore has them too
 TEXT = {".py", ".md", ".toml", ".json", ".csv", ".txt", ".yaml", ".yml", ".html", ".css", ".js", ".conf", ".svg", ""}
 
 # In halves, so that this file does not hold them.
@@ -44,7 +44,8 @@ PATHS = [a + b for a, b in (("/wo", "rk/"), ("/opt/", "fm"), ("/roo", "t/"), ("/
 
 def files() -> Iterator[Path]:
     """Yield every file of the project, made ones left out."""
-    tops = [path for path in ROOT.iterdir() if path.name in SHOWN | {".ci"} or (path.is_file() and path.name[0] == ".")]
+    dotfiles = {path.name for path in ROOT.glob(".*") if path.is_file() and not MADE.fullmatch(path.name)}
+    tops = [ROOT / name for name in SHOWN | dotfiles | {".ci"} if (ROOT / name).exists()]
     for top in tops:
         for path in [top] if top.is_file() else top.rglob("*"):
             if path.is_file() and "__pycache__" not in path.parts:

@@ -35,9 +35,9 @@ def _view(endpoint: Endpoint, limits: Limits, most_bytes: int) -> Callable[[], R
         media_type = chosen_format(current)
         loaded = load(endpoint, stated_request(current, most_bytes), limits)
         tag = entity_tag(endpoint, loaded, media_type)
-        headers = {"ETag": f'"{tag}"', "Vary": "Accept", "Accept-Query": MEDIA_TYPE}
+        headers = {"ETag": f'"{tag}"', "Vary": "Accept"}
         if current.method in SAFE:
-            headers["Cache-Control"] = CACHE_CONTROL
+            headers["Accept-Query"], headers["Cache-Control"] = MEDIA_TYPE, CACHE_CONTROL
             if "If-None-Match" in current.headers and current.if_none_match.contains_weak(tag):
                 return Response(status=304, headers=headers)
         return Response(answer(endpoint, loaded), content_type=media_type, headers=headers)

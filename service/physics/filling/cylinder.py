@@ -65,7 +65,7 @@ class Cylinder(RoundWalls):
             levels = np.concatenate([[low], inside])
             edges, weights = self._levels.points(low, high, SHARP)
             held = np.sqrt(np.maximum(levels[:, None] - edges, 0.0)) @ weights / _ROOM
-            top = float(np.sqrt(high - edges) @ weights) / _ROOM
+            top = float(np.sqrt(np.maximum(high - edges, 0.0)) @ weights) / _ROOM
             if low > 0.0 and held[0] > filled:
                 low, high, margin = max(low - 2.0 * margin, 0.0), low, 2.0 * margin
             elif top < filled:

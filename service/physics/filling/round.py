@@ -1,6 +1,7 @@
 """What cylinders and spheres with hard walls share: sums over the zeros of Bessel functions, by few points each."""
 
 import math
+from abc import abstractmethod
 from typing import Final, Self
 
 import numpy as np
@@ -124,15 +125,22 @@ class RoundWalls(States):
         low, high = min(start, potential), max(start, potential)
         # The start cuts sharply, the chemical potential smoothly: between the two the levels go one by one.
         kernel = Kernel(0.0, 4.0 * warmth, REACH * warmth)
-        lowest = self._levels.lowest
-        if not self._levels.reaches(low, high, kernel):
+        levels, lowest = self._levels, self._levels.lowest
+        if levels.reaches(low, high, kernel):
+            edges, weights = levels.points(low, high, kernel)
+            return self._room * float(np.sum(weights * self._held_above(start - edges, potential - edges, warmth)))
+        if start > levels.end:
             return self._room * self._continuum.above(start + lowest, potential + lowest, warmth)
-        edges, weights = self._levels.points(low, high, kernel)
-        return self._room * float(np.sum(weights * self._held_above(start - edges, potential - edges, warmth)))
+        # So hot that carriers lie past all lists: few of them are below the start.
+        edges, weights = levels.points(start, start, Kernel(0.0, 4.0 * warmth, 0.0))
+        eta = (potential - edges) / warmth
+        held = math.pow(warmth, self._half) * np.asarray(fermi_dirac_integral(self._half - 1.0, eta))
+        below = float(np.sum(weights * (held - self._held_above(start - edges, potential - edges, warmth))))
+        return self._room * (float(self._continuum.thermal(potential + lowest, warmth)) - below)
 
+    @abstractmethod
     def _held_above(self, start: FloatArray, potential: FloatArray, warmth: float) -> FloatArray:
         """Return what levels hold above a start, which like the chemical potential is measured from their edges."""
-        raise NotImplementedError
 
     def spread_states(self, energy: Values, broadening: Broadening) -> tuple[Values, Values]:
         energies = np.atleast_1d(np.asarray(energy, dtype=np.float64)) / self._unit

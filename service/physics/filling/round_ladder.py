@@ -136,12 +136,16 @@ class RoundLadder:
     def points(self, low: float, high: float, kernel: Kernel) -> tuple[FloatArray, FloatArray]:
         """Return energies and weights that stand for the levels in a sum: see `LevelClusters`.
 
-        Beyond the ladder: the levels of a window, one by one, with a taper at its lower end, below which the smooth
-        count serves. The last window is remembered, for it serves every function of energies inside it.
+        Beyond the ladder: the levels one by one; for energies that lie themselves beyond it, those of a window with a
+        taper at its lower end, below which the smooth count serves. The last window is remembered, for it serves every function of energies inside it.
         """
         top = high + kernel.reach
         if top <= self.end:
             return self._clusters.points(low, high, kernel)
+        if low < self.end:
+            edges, weights = self._clusters.points(low, self.end, kernel)
+            beyond, room, _ = self.between(self.end, top)
+            return np.concatenate([edges, beyond]), np.concatenate([weights, room])
         if self._window is None or low < self._window[0] or top > self._window[1]:
             self._window = low, top, *self._tapered_window(low, top)
         return self._window[2:]

@@ -340,7 +340,7 @@ def test_a_large_sample_is_bulk_with_less_room_at_its_surface(shape):
     wavenumber = (3.0 * math.pi**2 * density) ** (1.0 / 3.0)
     bulk = (REDUCED_PLANCK * wavenumber) ** 2 / (2.0 * MASS)
     filled = states.lowest_level + states.fermi_energy(density * extent)
-    # dE/E = (2/3) (3 pi / 8) S / (V k_F), with S / V = 4 / d or 6 / d: H. P. Baltes, E. R. Hilf (1976); next order 1e-5.
+    # dE/E = (2/3) (3 pi / 8) S / (V k_F), with S / V = 4 / d or 6 / d: H. P. Baltes, E. R. Hilf (1976).
     surface = math.pi / 4.0 * (4.0 if shape == "cylinder" else 6.0) / (100e-9 * wavenumber)
     assert filled / bulk - 1.0 == pytest.approx(surface, rel=0.03)
 
