@@ -214,9 +214,13 @@ class SampleRequest(StrictSchema):
         units = stated.get("output_units", {})
         for name, messages in check_for_kind(units, kind).items():
             put(errors, ("output_units", name), messages)
-        columns = _columns(stated, kind)
-        samples = arrange(
-            columns, stated.get("combine") == "grid", stated.get("invalid_rows") == "omit", limits, errors
+        single = None if errors else _single(stated, kind)
+        samples = single or arrange(
+            _columns(stated, kind),
+            stated.get("combine") == "grid",
+            stated.get("invalid_rows") == "omit",
+            limits,
+            errors,
         )
         curve = self._curve(stated, samples, limits, errors)
         if errors or samples is None:
@@ -256,6 +260,23 @@ def _density_measure(density: Stated | None, kind: str | None, errors: dict[Any,
         stated = DIMENSIONS[density.unit.dimension].phrase
         put(errors, ("carrier_density", "unit"), [f"{density.unit.symbol} is {stated}; a {kind} takes {wanted}"])
     return measure
+
+
+def _single(stated: dict[str, Any], kind: str) -> Samples | None:
+    """Return the one sample of a request whose quantities are plain numbers; None where any is an array."""
+    geometry, band = stated["geometry"], stated.get("band", {})
+    mass = band.get("effective_mass", 1.0)
+    parameters = [
+        stated["carrier_density"],
+        *(geometry[name] for name in KINDS[kind].lengths),
+        stated["temperature"],
+        *(mass if type(mass) is list else (mass,)),
+        *(band.get(name, default) for name, default in _BAND_DEFAULTS),
+    ]
+    values = [parameter if type(parameter) is float else parameter.si for parameter in parameters]
+    if any(type(value) is not float for value in values):
+        return None
+    return Samples(None, values, {"axes": [], "shape": []} if "combine" in stated else None)
 
 
 def _columns(stated: dict[str, Any], kind: str | None) -> list[Column]:

@@ -7,11 +7,14 @@ import math
 from typing import Final
 
 import numpy as np
+from numpy.typing import NDArray
 from scipy.special import zeta
 
 from service.physics.broadening import spread_level
 from service.physics.filling.film_ladder import sum_of_levels
 from service.physics.values import FloatArray
+
+ComplexArray = NDArray[np.complex128]
 
 GAUSSIAN_REACH: Final = 9.0
 """A Gaussian of unit width holds 1e-19 of itself beyond nine widths."""
@@ -112,12 +115,12 @@ def lorentzian(energy: FloatArray, spacing: FloatArray) -> tuple[FloatArray, Flo
     return density, spacing * (_antiderivative(root) - start)
 
 
-def _root(energy: FloatArray, spacing: FloatArray) -> np.ndarray:
-    root: np.ndarray = np.sqrt((energy + spacing + 1j) / spacing)
+def _root(energy: FloatArray, spacing: FloatArray) -> ComplexArray:
+    root: ComplexArray = np.sqrt((energy + spacing + 1j) / spacing)
     return root
 
 
-def _antiderivative(root: np.ndarray) -> FloatArray:
+def _antiderivative(root: ComplexArray) -> FloatArray:
     """Return -(2/pi) Im of the integral of z ln(sin(pi z)/(pi z)) dz."""
     square = root * root
     residue = 2j * math.pi * root
@@ -127,7 +130,7 @@ def _antiderivative(root: np.ndarray) -> FloatArray:
     return np.asarray(-2.0 / math.pi * (smooth - ripple).imag)
 
 
-def polylogarithm(order: int, logarithm: np.ndarray) -> np.ndarray:
+def polylogarithm(order: int, logarithm: ComplexArray) -> ComplexArray:
     r"""Return the polylogarithm of order 2 or 3 of exp(w), for Re w <= 0.
 
     .. math::
@@ -158,7 +161,7 @@ def polylogarithm(order: int, logarithm: np.ndarray) -> np.ndarray:
     """
     turned = logarithm - 2j * math.pi * np.round(logarithm.imag / (2.0 * math.pi))
     near = turned.real >= -1.0
-    result = np.empty_like(turned)
+    result: ComplexArray = np.empty_like(turned)
     if near.any():
         result[near] = _near_one(order, turned[near])
     if not near.all():
@@ -171,7 +174,7 @@ def polylogarithm(order: int, logarithm: np.ndarray) -> np.ndarray:
     return result
 
 
-def _near_one(order: int, w: np.ndarray) -> np.ndarray:
+def _near_one(order: int, w: ComplexArray) -> ComplexArray:
     harmonic = 1.0 if order == 2 else 1.5
     zero = w == 0.0
     logarithm = np.log(np.where(zero, -1.0, -w))
@@ -196,7 +199,8 @@ def _zeta_at(argument: int) -> float:
     # By the reflection formula, DLMF 25.4.2.
     m = (1 - argument) // 2
     whole = float(zeta(2.0 * m))
-    return 2.0 * (2.0 * math.pi) ** (-2 * m) * (-1) ** m * math.factorial(2 * m - 1) * whole
+    size = 2.0 * math.pow(2.0 * math.pi, -2 * m) * math.factorial(2 * m - 1) * whole
+    return -size if m % 2 else size
 
 
 _ZETA: Final = {argument: _zeta_at(argument) for argument in range(3 - _TERMS, 4) if argument != 1}

@@ -103,10 +103,8 @@ def reduced_chemical_potential(load: float, spacing: float) -> float:
     if spacing < 0.3:
         width = 2.0 * math.sqrt(spacing / math.pi)
         above_edge = eta + spacing
-        for _ in range(2):
-            surface = 0.5 * (max(above_edge, 0.0) + math.log1p(math.exp(-abs(above_edge))))
-            above_edge = _one(inverse_fermi_dirac_integral(0.5, (load + surface) * width))
-        eta = min(above_edge - spacing, eta)
+        surface = 0.5 * (max(above_edge, 0.0) + math.log1p(math.exp(-abs(above_edge))))
+        eta = min(_one(inverse_fermi_dirac_integral(0.5, (load + surface) * width)) - spacing, eta)
     for _ in range(60):
         total, slope, bend = occupation_sum(eta, spacing)
         newton = -math.log(total / load) * total / slope

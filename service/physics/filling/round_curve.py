@@ -75,7 +75,7 @@ def _sums(
     ladder: RoundLadder, energy: FloatArray, kernel: Kernel, level: Functions, smooth: Functions
 ) -> tuple[FloatArray, ...]:
     def inside(low: float, high: float) -> bool:
-        return high + kernel.reach <= ladder.end or (energy.size == 1 and ladder.reaches(low, high, kernel))
+        return max(high, 0.0) + kernel.reach <= ladder.end or (energy.size == 1 and ladder.reaches(low, high, kernel))
 
     return _in_bins(energy, kernel, ladder.points, inside, level, lambda above: smooth(above + ladder.lowest))
 

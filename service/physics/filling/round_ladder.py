@@ -86,7 +86,7 @@ class RoundLadder:
 
     def points_estimate(self, potential: float, kernel: Kernel) -> float:
         """Return about how many points a sum takes."""
-        top = potential + kernel.reach
+        top = _top(potential, kernel)
         if top <= self.end:
             return min(self.entries_within(0.0, top), 1000.0)
         return self.entries_within(self._window_start(potential), top)
@@ -127,7 +127,7 @@ class RoundLadder:
 
         Beyond the ladder there is no need to where warmth has damped the shells out of the sum.
         """
-        top = high + kernel.reach
+        top = _top(high, kernel)
         if top <= self.end:
             return True
         damping = 2.0 * kernel.blur / self._wavenumber(high)
@@ -137,13 +137,14 @@ class RoundLadder:
         """Return energies and weights that stand for the levels in a sum: see `LevelClusters`.
 
         Beyond the ladder: the levels one by one; for energies that lie themselves beyond it, those of a window with a
-        taper at its lower end, below which the smooth count serves. The last window is remembered, for it serves every function of energies inside it.
+        taper at its lower end, below which the smooth count serves. The last window is remembered, for
+        it serves every function of energies inside it.
         """
-        top = high + kernel.reach
+        top = _top(high, kernel)
         if top <= self.end:
             return self._clusters.points(low, high, kernel)
         if low < self.end:
-            edges, weights = self._clusters.points(low, self.end, kernel)
+            edges, weights = self._clusters.points(low, min(high, self.end), kernel)
             beyond, room, _ = self.between(self.end, top)
             return np.concatenate([edges, beyond]), np.concatenate([weights, room])
         if self._window is None or low < self._window[0] or top > self._window[1]:
@@ -179,6 +180,11 @@ def _shared(family: Family) -> RoundLadder:
 def round_ladder(family: Family) -> RoundLadder:
     """Return the ladder of a shape for one sample: built once, all arrays shared, with a window of its own."""
     return copy(_shared(family))
+
+
+def _top(high: float, kernel: Kernel) -> float:
+    """Return up to where the levels count, for energies below all levels too."""
+    return max(high, 0.0) + kernel.reach
 
 
 def _taper(past: FloatArray) -> FloatArray:
