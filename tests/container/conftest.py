@@ -5,7 +5,6 @@ import shutil
 from collections.abc import Iterator
 
 import pytest
-
 from container.engine import PROGRAMS, Container, Engine
 
 

@@ -6,7 +6,6 @@ import threading
 import time
 
 import pytest
-
 from container.engine import BASE, IMAGE, Container, Engine
 
 GOLD = {

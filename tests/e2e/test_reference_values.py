@@ -8,7 +8,7 @@ import json
 
 import pytest
 
-from reference.external import parameters, rows, value
+from external_values import parameters, rows, value
 from service.web.app import create_app
 
 MEASURES = {"3D": ("bulk", "m^-3"), "2D": ("sheet", "m^-2"), "1D": ("line", "m^-1")}

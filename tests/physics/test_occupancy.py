@@ -8,7 +8,7 @@ import pytest
 from hypothesis import given
 from hypothesis import strategies as st
 
-from reference.external import rows
+from external_values import rows
 from service.physics.constants import BOLTZMANN
 from service.physics.occupancy import occupation, thermal_broadening, transition_width
 

@@ -49,3 +49,16 @@ def test_a_converged_root_is_not_moved_by_those_still_under_way():
         return np.array([x[0] - 0.5, x[1] ** 3 - 1e-12]), np.array([1.0, 3 * x[1] ** 2])
 
     assert increasing_root(function, slow, np.ones(2), 1e-15) == pytest.approx([0.5, 1e-4], rel=1e-12)
+
+
+def test_the_steps_begin_where_they_are_told_to():
+    seen = []
+
+    def square(x):
+        seen.append(x)
+        return x * x - 2.0, 2.0 * x
+
+    assert increasing_root(square, 0.0, 2.0, 1e-15, 1.5) == pytest.approx(math.sqrt(2.0), rel=1e-15)
+    assert seen[0] == 1.5
+    many = increasing_root(square, np.zeros(2), np.full(2, 2.0), np.full(2, 1e-15), np.array([1.5, 1.25]))
+    assert many == pytest.approx(math.sqrt(2.0), rel=1e-15)

@@ -146,8 +146,6 @@ class RoundContinuum:
                 return -1.0, 0.0
             return math.log(held / filled), float(self.thermal(potential, warmth, 1)) / held
 
-        while excess(high)[0] < 0.0:
-            high += max(warmth, 0.5 * abs(high))
         return float(increasing_root(excess, low, high, 1e-13 * max(abs(high), warmth)))
 
     def relative_error(self, potential: float, warmth: float) -> float:

@@ -69,8 +69,6 @@ def _logarithm(distance: FloatArray, room: FloatArray, constant: float) -> tuple
     share = np.where(distance > 0.0, np.exp(nearest - np.maximum(distance, nearest)), 1.0) / (1.0 + decay)
     parts = room * share
     total = constant + float(parts.sum())
-    if total <= 0.0:
-        return -math.inf, 0.0
     # 1 - f beside f: decay belongs to the side on which the level is mostly empty.
     slope = float(np.sum(parts * np.where(distance > 0.0, 1.0, decay) / (1.0 + decay)))
     return math.log(total) - nearest, slope / total

@@ -10,7 +10,7 @@ import pytest
 from hypothesis import given
 from hypothesis import strategies as st
 
-from reference.external import parameters, value
+from external_values import parameters, value
 from service.physics.fermi_dirac import fermi_dirac_integral
 from service.physics.fermi_dirac.complete import ORDERS, TABULATED
 from service.physics.tables import FERMI_DIRAC_CHECKSUM

@@ -8,7 +8,7 @@ import pytest
 from hypothesis import given, settings
 from hypothesis import strategies as st
 
-from reference.external import parameters, value
+from external_values import parameters, value
 from service.physics.bands import Band
 from service.physics.broadening import Broadening
 from service.physics.constants import BOLTZMANN, ELECTRON_MASS, ELEMENTARY_CHARGE, REDUCED_PLANCK

@@ -10,7 +10,7 @@ from hypothesis import given
 from hypothesis import strategies as st
 from scipy.integrate import quad
 
-from reference.external import parameters, value
+from external_values import parameters, value
 from service.physics.broadening import Broadening
 from service.physics.constants import BOLTZMANN, ELECTRON_MASS, REDUCED_PLANCK
 from service.physics.filling.ideal import IdealGas

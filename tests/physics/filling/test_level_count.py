@@ -8,7 +8,7 @@ import pytest
 from hypothesis import given, settings
 from hypothesis import strategies as st
 
-from reference.external import parameters, rows, value
+from external_values import parameters, rows, value
 from service.physics.broadening import Broadening
 from service.physics.constants import BOLTZMANN, ELECTRON_MASS, ELEMENTARY_CHARGE, REDUCED_PLANCK
 from service.physics.filling.level_count import LevelCount

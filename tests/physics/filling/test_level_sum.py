@@ -8,7 +8,7 @@ import numpy as np
 import pytest
 from scipy.integrate import quad
 
-from reference.external import parameters, value
+from external_values import parameters, value
 from service.physics.broadening import Broadening
 from service.physics.constants import BOLTZMANN, ELECTRON_MASS, ELEMENTARY_CHARGE
 from service.physics.filling.level_sum import LevelSum

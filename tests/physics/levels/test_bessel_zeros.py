@@ -11,7 +11,7 @@ from hypothesis import given, settings
 from hypothesis import strategies as st
 from scipy.special import jn_zeros, jv, jvp, spherical_jn
 
-from reference.external import parameters, value
+from external_values import parameters, value
 from service.physics.levels import bessel_zeros as module
 from service.physics.levels.bessel_zeros import bessel_zeros, orbital_degeneracy, zeros_between, zeros_up_to
 from service.physics.tables import BESSEL_ZEROS_CHECKSUM

@@ -1,4 +1,4 @@
-"""External reference values, each row with its source: see README.md beside this file.
+"""External reference values, each row with its source: see tests/reference/external/README.md.
 
 A check names its source through the row: `row["source"]` and `row["provenance"]` stand in the test's id and message.
 """
@@ -10,7 +10,7 @@ from typing import Any
 
 import pytest
 
-FOLDER = Path(__file__).parent
+FOLDER = Path(__file__).parents[1] / "reference" / "external"
 
 
 @cache
