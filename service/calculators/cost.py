@@ -1,6 +1,5 @@
 """What a request would cost, told before anything is computed: valid but enormous requests are refused up front."""
 
-import math
 from collections.abc import Callable
 from functools import wraps
 from typing import Final, ParamSpec, TypeVar
@@ -9,7 +8,6 @@ import numpy as np
 
 from service.calculators.sample import ElectronGas
 from service.errors import Fault, TooLarge
-from service.physics.levels.round import LARGEST_ZERO
 from service.physics.levels.source import TooManyLevels
 
 P = ParamSpec("P")
@@ -22,11 +20,6 @@ _SOLVE = 10.0
 """Sums over the levels in one solve, about: the steps to the root, and the results that need a sum of their own."""
 
 
-def _beyond_tables() -> Fault:
-    detail = f"its levels reach beyond k R = {LARGEST_ZERO:g}, where the tabulated ones end: a smaller diameter, "
-    return Fault(("geometry",), detail + "fewer carriers or a lower temperature would fit")
-
-
 def within_levels(calculate: Callable[P, R]) -> Callable[P, R]:
     """Refuse, instead of failing, where a calculator finds that a curve needs more levels than can be listed."""
 
@@ -35,8 +28,6 @@ def within_levels(calculate: Callable[P, R]) -> Callable[P, R]:
         try:
             return calculate(*stated, **options)
         except TooManyLevels as error:
-            if math.isinf(error.count):
-                raise TooLarge(_beyond_tables()) from None
             detail = f"this request needs {error}: lower energies or a narrower broadening would fit"
             raise TooLarge(Fault(("energies",), detail)) from None
 
@@ -62,8 +53,6 @@ def refuse_enormous(gas: ElectronGas, points: int = 0) -> None:
     total = each if isinstance(each, float) and gas.sample.count is None else float(np.sum(gas.per_sample(each)))
     if total <= MOST_LEVELS:
         return
-    if math.isinf(total):
-        raise TooLarge(_beyond_tables())
     count = gas.sample.count or 1
     largest = float(np.max(each))
     if count > 1 and largest <= MOST_LEVELS:

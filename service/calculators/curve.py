@@ -79,7 +79,7 @@ def edge_on_grid(states: States, energies: FloatArray, from_band_edge: FloatArra
     ndarray of bool
         True on an edge.
     """
-    if states.free_dimensions != 1:
+    if not states.shows_edges(float(energies.max())):
         return np.zeros(energies.shape, dtype=bool)
     rounding = 4.0 * np.finfo(np.float64).eps * np.maximum(np.abs(from_band_edge), np.abs(energies))
     above = np.nextafter(energies + rounding, np.inf)

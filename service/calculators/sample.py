@@ -128,9 +128,9 @@ class ElectronGas:
             return value
         return np.full(self.sample.count, value)
 
-    def words(self, word: str) -> str | list[str]:
-        """Return a word that all samples share: one for one sample, a list for a batch."""
-        return word if self.sample.count is None else [word] * self.sample.count
+    def words(self, word: str | list[str]) -> str | list[str]:
+        """Return a word that all samples share: one for one sample, a list for a batch; a list as it is."""
+        return word if self.sample.count is None or isinstance(word, list) else [word] * self.sample.count
 
 
 def electron_gas(sample: Sample) -> ElectronGas:

@@ -11,14 +11,15 @@ from types import MappingProxyType
 from typing import Final
 
 from service.physics.bands import Band
+from service.physics.filling.cylinder import Cylinder
 from service.physics.filling.film import HardWallFilm
 from service.physics.filling.ideal import IdealGas
 from service.physics.filling.level_count import LevelCount
 from service.physics.filling.level_sum import LevelSum
 from service.physics.filling.per_sample import one_or_many
+from service.physics.filling.sphere import Sphere
 from service.physics.filling.states import States
 from service.physics.levels.rectangular import RectangularLevels
-from service.physics.levels.round import RoundLevels
 from service.physics.values import Values
 
 Lengths = Mapping[str, Values]
@@ -80,10 +81,7 @@ def _wire(band: Band, lengths: Lengths) -> States:
 
 
 def _cylinder(band: Band, lengths: Lengths) -> States:
-    def build(mass: float, degeneracy: float, diameter: float) -> States:
-        return LevelSum(RoundLevels("cylinder", diameter, mass), 1, mass, degeneracy)
-
-    return one_or_many(build, band.mass_x, band.degeneracy, lengths["diameter"])
+    return one_or_many(Cylinder, band.mass_x, band.degeneracy, lengths["diameter"])
 
 
 def _box(band: Band, lengths: Lengths) -> States:
@@ -94,10 +92,7 @@ def _box(band: Band, lengths: Lengths) -> States:
 
 
 def _sphere(band: Band, lengths: Lengths) -> States:
-    def build(mass: float, degeneracy: float, diameter: float) -> States:
-        return LevelCount(RoundLevels("sphere", diameter, mass), degeneracy)
-
-    return one_or_many(build, band.mass_x, band.degeneracy, lengths["diameter"])
+    return one_or_many(Sphere, band.mass_x, band.degeneracy, lengths["diameter"])
 
 
 def _none(lengths: Lengths) -> Values:

@@ -15,8 +15,9 @@ def _reduced(energy: Values, chemical_potential: Values, temperature: Values) ->
     """Return (E - mu) / kT, held within what exp() can take; at T = 0 an end of that range, or 0 at mu."""
     distance = np.asarray(energy, dtype=np.float64) - chemical_potential
     thermal_energy = BOLTZMANN * np.asarray(temperature, dtype=np.float64)
+    end = np.asarray(np.sign(distance) * np.full(thermal_energy.shape, _BEYOND))
     within = np.abs(distance) < _BEYOND * thermal_energy
-    return np.divide(distance, thermal_energy, out=np.asarray(np.sign(distance) * _BEYOND), where=within)
+    return np.asarray(np.divide(distance, thermal_energy, out=end, where=within))
 
 
 def _decay(reduced: FloatArray) -> FloatArray:
@@ -45,7 +46,8 @@ def occupation(energy: Values, chemical_potential: Values, temperature: Values) 
 
     Notes
     -----
-    Neither tail overflows or is taken as a difference: f keeps its relative precision down to the last double.
+    Neither tail overflows or is taken as a difference: f keeps its relative precision down to the last double. So does
+    1 - f, the occupation by holes: it is f with the energy and the chemical potential exchanged.
 
     References
     ----------

@@ -46,11 +46,10 @@ def test_energies_far_above_the_carriers_are_refused_rather_than_listed():
 
 
 @pytest.mark.parametrize("kind", ["cylinder", "sphere"])
-def test_a_round_shape_beyond_its_tabulated_levels_is_refused(kind):
-    with pytest.raises(TooLarge, match="1000"):
-        fermi_level(sample(kind, lengths={"diameter": 1e-5}))
-    with pytest.raises(TooLarge, match="1000"):
-        density_of_states(sample(kind), np.array([1e-13]), Broadening("gaussian", 1e-21))
+def test_a_round_shape_of_a_tenth_of_a_millimetre_is_answered_by_the_continuum_with_its_bound(kind):
+    result = fermi_level(sample(kind, lengths={"diameter": 1e-4}, carrier_density=5.9e28, mass=1.0))
+    assert result.method == "continuum"
+    assert 0 < result.relative_error_bound < 1e-6
 
 
 @pytest.mark.parametrize("kind", ["bulk", "film", "sheet", "line"])

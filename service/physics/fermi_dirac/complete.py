@@ -14,7 +14,9 @@ from service.physics.values import FloatArray, Values
 
 FILE: Final = "fermi_dirac.npz"
 LOW: Final = -40.0
-HIGH: Final = 40.0
+HIGH: Final = 40.0 - 2.0**-46
+"""The last double whose distance from `LOW`, as rounded, lies within the last cell: the series begin there."""
+
 _CELLS_PER_UNIT: Final = 32
 _CHUNK: Final = 1 << 14
 """Elements at a time, so that a chunk's buffers stay in the second-level cache."""
@@ -135,7 +137,7 @@ def _integral_of_many(order: float, eta: FloatArray) -> FloatArray:
 def _tabulated(order: float, polynomials: FloatArray, eta: FloatArray, result: FloatArray) -> None:
     """Fill `result` with one chunk's integrals: the table for all, then the two ends where there are any."""
     lowest, highest = eta.min(), eta.max()
-    inside = eta if LOW <= lowest and highest < HIGH else np.clip(eta, LOW, HIGH - 1e-9)
+    inside = eta if LOW <= lowest and highest < HIGH else np.clip(eta, LOW, HIGH)
     cell = ((inside - LOW) * _CELLS_PER_UNIT).astype(np.intp)
     # The centre is formed exactly and then subtracted: the other order costs 4e-15.
     offset = inside - ((cell + 0.5) / _CELLS_PER_UNIT + LOW)

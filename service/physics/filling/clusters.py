@@ -34,11 +34,11 @@ class Kernel:
     Attributes
     ----------
     blur : float
-        How far above and below the real axis its singularities lie: pi kT for occupations; 0 for sharp states.
+        How far above and below the real axis its singularities lie: pi kT for occupations; 0 for sharp states [1].
     widest : float
-        Half width of the widest cluster within `reach`: over more decades of an exponential 22 points are too few.
+        Half width of the widest cluster within `reach`: over more decades of an exponential 22 points are too few [1].
     reach : float
-        How far above the energies the levels still count; infinite for a function without a cut-off.
+        How far above the energies the levels still count; infinite for a function without a cut-off [1].
     """
 
     blur: float
@@ -69,7 +69,7 @@ class LevelClusters:
     Parameters
     ----------
     edge : ndarray, shape (L,)
-        The levels, ascending, in any unit of energy.
+        The levels, ascending, in any unit of energy [1].
     degeneracy : ndarray, shape (L,)
         Their degeneracies [1].
 
@@ -106,14 +106,14 @@ class LevelClusters:
         Parameters
         ----------
         low, high : float
-            The energies from which the function's distances are taken.
+            The energies from which the function's distances are taken [1].
         kernel : Kernel
             What the function is like.
 
         Returns
         -------
         ndarray, shape (K,)
-            Energies, levels one by one near the range and points of clusters elsewhere.
+            Energies, levels one by one near the range and points of clusters elsewhere [1].
         ndarray, shape (K,)
             Their weights [1].
         """

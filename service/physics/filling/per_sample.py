@@ -24,8 +24,14 @@ class PerSample(States):
     def __init__(self, samples: Sequence[States]) -> None:
         self._samples = tuple(samples)
         self.free_dimensions = samples[0].free_dimensions
-        self.method = samples[0].method
-        self.relative_error_bound = np.array([sample.relative_error_bound for sample in samples], dtype=np.float64)
+
+    @property
+    def method(self) -> list[str]:  # type: ignore[override]
+        return [str(sample.method) for sample in self._samples]
+
+    @property
+    def relative_error_bound(self) -> Values:  # type: ignore[override]
+        return np.array([sample.relative_error_bound for sample in self._samples], dtype=np.float64)
 
     @property
     def lowest_level(self) -> Values:
@@ -66,6 +72,9 @@ class PerSample(States):
 
     def levels_below(self, energy: Values) -> Values:
         return self._each(lambda states, own: states.levels_below(own), energy)
+
+    def shows_edges(self, highest: float) -> bool:
+        return any(sample.shows_edges(highest) for sample in self._samples)
 
     def warm_chemical_potential(self, density: Values, temperature: Values) -> Values:
         return self._each(lambda states, *own: states.warm_chemical_potential(*own), density, temperature)

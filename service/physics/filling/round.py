@@ -19,8 +19,8 @@ from service.physics.levels.bessel_zeros import Family
 from service.physics.levels.source import Ladder
 from service.physics.values import FloatArray, Values
 
-POINTS_OF_A_SUM: Final = 1000.0
-"""About how many points stand for all levels of a sum within the ladder."""
+OWN_WORK: Final = 2000.0
+"""What a solve costs beside its points, in levels of half a microsecond over its ten sums."""
 
 
 class RoundWalls(States):
@@ -60,13 +60,17 @@ class RoundWalls(States):
         raise TypeError("one sample has no rows to take")
 
     def work(self, density: Values, temperature: Values) -> float:
-        """Return about how many levels a solve adds up, each call's own cost counted as five hundred [1]."""
+        """Return about how many levels a solve adds up, its own cost counted as levels too [1]."""
         warmth = self._warmth(temperature)
         potential = self._smooth_potential(float(density) / self._room, 0.0)
         kernel = occupations(warmth)
         if not self._levels.reaches(potential, potential, kernel):
-            return POINTS_OF_A_SUM
-        return 500.0 + self._levels.points_estimate(potential, kernel)
+            return OWN_WORK
+        return OWN_WORK + self._levels.points_estimate(potential, kernel)
+
+    def shows_edges(self, highest: float) -> bool:
+        # Past the levels that are listed a curve shows the smooth states.
+        return self.free_dimensions == 1 and highest <= self._unit * self._levels.end
 
     def _warmth(self, temperature: Values) -> float:
         return BOLTZMANN * float(temperature) / self._unit

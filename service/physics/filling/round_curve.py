@@ -55,7 +55,7 @@ def over_levels(
     ladder : RoundLadder
         The levels.
     energy : ndarray
-        From the lowest level.
+        From the lowest level, over hbar^2 / 2 m R^2 [1].
     kernel : Kernel
         What the function is like.
     level : callable
@@ -66,7 +66,7 @@ def over_levels(
     Returns
     -------
     ndarray
-        The sums, of the same shape.
+        The sums, of the same shape [1].
     """
     return _sums(ladder, energy, kernel, lambda above: (level(above),), lambda energy: (smooth(energy),))[0]
 
@@ -125,18 +125,18 @@ def spread(
     continuum : RoundContinuum
         Their smooth part.
     dimensions : int
-        D, the free dimensions of each level: 1 or 0.
+        D, the free dimensions of each level: 1 or 0 [1].
     energy : ndarray
-        From the lowest level.
+        From the lowest level, over hbar^2 / 2 m R^2 [1].
     kind : str
-        ``gaussian``, ``lorentzian`` or ``thermal``.
+        ``gaussian``, ``lorentzian`` or ``thermal`` [1].
     width : float
-        The width.
+        The width, in the same unit [1].
 
     Returns
     -------
     tuple of ndarray
-        The density and its integral, each of the shape of `energy`.
+        The density and its integral, each of the shape of `energy` [1].
     """
     scale = width ** (dimensions / 2.0 - 1.0)
 

@@ -123,7 +123,8 @@ class Sphere(RoundWalls):
         if not levels.reaches(guess, guess, kernel):
             return self._by_continuum(guess, warmth)
         highest, following, held, _ = self._shell(filled)
-        low, high = highest - _HOLES_REACH * warmth, following + _HOLES_REACH * warmth
+        # However cold, both levels themselves are within, found anew.
+        low, high = highest * JUST_BELOW - _HOLES_REACH * warmth, following / JUST_BELOW + _HOLES_REACH * warmth
         if levels.entries_within(low, high) <= _BALANCED:
             return self._unit * self._balanced(highest, held, low, high, warmth)
         return self._unit * self._summed(filled, warmth, guess, kernel)

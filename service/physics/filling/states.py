@@ -28,7 +28,9 @@ class States(ABC):
     """
 
     free_dimensions: int
-    method: str
+    method: str | list[str]
+    """The way in which the last solve was done; one word for each of N samples where they may differ."""
+
     relative_error_bound: Values
     """Bound on the error of the chemical potential over max(|mu|, kT), mu from the band edge."""
 
@@ -68,6 +70,10 @@ class States(ABC):
     @abstractmethod
     def levels_below(self, energy: Values) -> Values:
         """Return how many orbital levels have their edge strictly below `energy` (in a box: up to and including)."""
+
+    def shows_edges(self, highest: float) -> bool:
+        """Tell whether a curve up to an energy [J] shows edges where the sharp density of states diverges."""
+        return self.free_dimensions == 1
 
     @abstractmethod
     def warm_chemical_potential(self, density: Values, temperature: Values) -> Values:

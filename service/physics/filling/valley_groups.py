@@ -31,11 +31,20 @@ class ValleyGroups(States):
     def __init__(self, groups: Sequence[States]) -> None:
         self._groups = tuple(groups)
         self.free_dimensions = groups[0].free_dimensions
-        self.method = max((group.method for group in groups), key=("closed-form", "continuum", "level-sum").index)
-        # The root's own tolerance stands beside the largest bound of a group.
-        self.relative_error_bound = reduce(largest, [1e-14, *(group.relative_error_bound for group in groups)])
         self._lowest = reduce(smallest, [group.lowest_level for group in groups])
         self._offsets = [group.lowest_level - self._lowest for group in groups]
+
+    @property
+    def method(self) -> str | list[str]:  # type: ignore[override]
+        methods = [group.method for group in self._groups]
+        if isinstance(methods[0], list):
+            return [_roughest(own) for own in zip(*methods, strict=True)]
+        return _roughest([str(method) for method in methods])
+
+    @property
+    def relative_error_bound(self) -> Values:  # type: ignore[override]
+        # The root's own tolerance stands beside the largest bound of a group.
+        return reduce(largest, [1e-14, *(group.relative_error_bound for group in self._groups)])
 
     @property
     def lowest_level(self) -> Values:
@@ -121,6 +130,9 @@ class ValleyGroups(States):
     def levels_below(self, energy: Values) -> Values:
         return self._total(lambda group, offset: group.levels_below(energy - _like(offset, energy)))
 
+    def shows_edges(self, highest: float) -> bool:
+        return any(group.shows_edges(highest) for group in self._groups)
+
     def warm_chemical_potential(self, density: Values, temperature: Values) -> Values:
         share = density / len(self._groups)
         high = reduce(
@@ -183,6 +195,11 @@ class ValleyGroups(States):
         edge = np.concatenate(edges)
         order = np.argsort(edge, kind="stable")[:most]
         return Ladder(np.concatenate(numbers)[order], edge[order], np.concatenate(degeneracies)[order]), total
+
+
+def _roughest(methods: Sequence[str]) -> str:
+    """Return the method that says the most of what was approximated or added up."""
+    return max(methods, key=("closed-form", "level-sum", "continuum").index)
 
 
 def _like(offset: Values, energy: Values) -> Values:

@@ -211,7 +211,37 @@ def zeros_between(family: Family, low: float, high: float) -> tuple[BesselZeros,
 
 
 def zeros_up_to(family: Family, bound: float) -> tuple[float, float]:
-    """Return how many zeros lie up to a bound beyond the table, and how many orbital levels they are [1]."""
+    r"""Return how many zeros lie up to a bound beyond the table, and how many orbital levels they are.
+
+    .. math:: n_\nu(x) = \Bigl\lfloor \frac{\theta_\nu(x)}{\pi} + \frac12 \Bigr\rfloor
+
+    Parameters
+    ----------
+    family : str
+        ``cylinder`` or ``sphere`` [1].
+    bound : float
+        x, at least 1000 [1].
+
+    Returns
+    -------
+    float
+        The zeros of all orders up to the bound [1].
+    float
+        The same with their degeneracies [1].
+
+    Notes
+    -----
+    By the phase of each order, see `zeros_between`: no zero is listed.
+
+    References
+    ----------
+    NIST DLMF 10.18.18, 10.19.8.
+
+    Examples
+    --------
+    >>> zeros_up_to("cylinder", 1000.0)
+    (124906.0, 249494.0)
+    """
     orders, index = _orders_up_to(family, bound)
     counts = _zeros_up_to(index, _first_zeros(index), bound)
     return float(np.sum(counts)), float(np.sum(orbital_degeneracy(family, orders) * counts))

@@ -9,11 +9,11 @@ from hypothesis import given, settings
 from hypothesis import strategies as st
 
 from external_values import parameters, rows, value
+from round_levels import RoundLevels
 from service.physics.broadening import Broadening
 from service.physics.constants import BOLTZMANN, ELECTRON_MASS, ELEMENTARY_CHARGE, REDUCED_PLANCK
 from service.physics.filling.level_count import LevelCount
 from service.physics.levels.rectangular import RectangularLevels
-from service.physics.levels.round import RoundLevels
 
 EV = ELEMENTARY_CHARGE
 MASS = 0.067 * ELECTRON_MASS

@@ -9,13 +9,13 @@ import pytest
 from scipy.integrate import quad
 
 from external_values import parameters, value
+from round_levels import RoundLevels
 from service.physics.broadening import Broadening
 from service.physics.constants import BOLTZMANN, ELECTRON_MASS, ELEMENTARY_CHARGE
 from service.physics.filling.level_sum import LevelSum
 from service.physics.levels.finite_well import FiniteWell
 from service.physics.levels.parabolic import ParabolicWell
 from service.physics.levels.rectangular import RectangularLevels
-from service.physics.levels.round import RoundLevels
 
 EV = ELEMENTARY_CHARGE
 MASS = 0.067 * ELECTRON_MASS

@@ -118,7 +118,7 @@ def test_beyond_the_table_the_functions_are_zero_at_their_zeros(order, low, high
 
 
 @given(st.floats(1000.0, 4000.0), st.floats(0.1, 3.0), st.floats(0.1, 3.0), st.sampled_from(FAMILIES))
-@settings(max_examples=25, deadline=None)
+@settings(max_examples=12, deadline=None)
 def test_windows_join_without_a_gap(low, first, second, family):
     middle, high = low + first, low + first + second
     lower, below = zeros_between(family, low, middle)

@@ -1,4 +1,4 @@
-"""Levels inside a hard-walled cylinder's cross-section and inside a sphere: zeros of Bessel functions."""
+"""Levels inside a hard-walled circle and ball, one by one from the tables of zeros: the plain way, to check by."""
 
 import math
 from functools import cache
@@ -17,7 +17,7 @@ LARGEST_ZERO: Final = 1000.0
 
 _WEYL: Final = {
     # Disc and ball with hard walls, in x = k R: area and perimeter terms; volume, surface and curvature terms.
-    "cylinder": (1.0 / 3.0, -0.5, 0.25, 0.0),
+    "cylinder": (1.0 / 6.0, -0.5, 0.25, 0.0),
     "sphere": (0.0, 2.0 / (3.0 * math.pi), -0.25, 2.0 / (9.0 * math.pi)),
 }
 
