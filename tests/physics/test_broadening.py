@@ -1,8 +1,10 @@
 """Line shapes: each dimension and shape against mpmath, their integrals against their densities, and their limits."""
 
+import csv
 import hashlib
 import math
 from importlib.resources import files
+from pathlib import Path
 
 import mpmath
 import numpy as np
@@ -15,7 +17,46 @@ from service.physics.tables import GAUSSIAN_CHECKSUM
 
 # The bound that the module states.
 STATED = 1e-14
+REFERENCE = Path(__file__).parents[1] / "reference" / "line_shapes" / "line_shapes.csv"
 POINTS = [-37.0, -12.5, -10.01, -9.99, -3.3, -1.0, -1e-3, 0.0, 0.7, 3.0, 9.99, 10.01, 30.0]
+
+
+@pytest.mark.parametrize("kind", ["gaussian", "lorentzian", "thermal"])
+@pytest.mark.parametrize("dimensions", [0, 1, 2, 3])
+def test_a_shape_is_the_quadrature_of_its_definition(kind, dimensions):
+    # Source: tests/reference/line_shapes/make_line_shapes.py, mpmath, each row confirmed by a second calculation.
+    with REFERENCE.open(encoding="utf-8", newline="") as file:
+        next(file)
+        rows = [row for row in csv.DictReader(file) if (row["dimensions"], row["kind"]) == (str(dimensions), kind)]
+    assert len(rows) >= 6
+    x, start, *expected = np.array(
+        [[float(row[name]) for name in ("x", "start", "density", "integral")] for row in rows]
+    ).T
+    for got, wanted in zip(spread_level(dimensions, kind, x, start), expected, strict=True):
+        # Beneath 1e-300 a product of two exponentials may pass through the doubles that have lost their digits.
+        assert got == pytest.approx(wanted, rel=STATED, abs=1e-300)
+
+
+@pytest.mark.parametrize("dimensions", [1, 2, 3])
+@pytest.mark.parametrize("start", [0.0, -5.0, 1e3, -1e8])
+@given(st.floats(-12, 0), st.sampled_from([-1, 1]))
+def test_a_lorentzians_integral_keeps_its_digits_close_to_its_start(dimensions, start, decades, sign):
+    x = start + sign * 10.0**decades * (1 + abs(start))
+    # Near the start it is the step times the density, with an error of the step's square: the mean of the density at
+    # both ends leaves step^2/12 of its second derivative, which on this scale is at most the density (start 0: 3/4).
+    ends = sum(spread_level(dimensions, "lorentzian", end)[0] for end in (x, start)) / 2
+    integral = spread_level(dimensions, "lorentzian", x, start)[1]
+    if 10.0**decades < 1e-3:
+        assert integral == pytest.approx((x - start) * ends, rel=STATED + 10.0 ** (2 * decades))
+    # And backwards it is its own negative, to the last digit or two.
+    assert spread_level(dimensions, "lorentzian", start, x)[1] == pytest.approx(-integral, rel=STATED)
+
+
+@pytest.mark.parametrize("kind", ["gaussian", "lorentzian", "thermal"])
+@pytest.mark.parametrize("dimensions", [0, 1, 2, 3])
+def test_an_energy_of_many_widths_neither_overflows_nor_warns(kind, dimensions):
+    for x in (-1e100, 1e100):
+        assert np.isfinite(spread_level(dimensions, kind, x)).all()
 
 
 def smeared_power(power, x):

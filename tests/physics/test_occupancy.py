@@ -23,6 +23,25 @@ def test_both_tails_keep_their_digits(reduced):
     assert float(occupation(reduced * KT, 0.0, 300.0)) == pytest.approx(float(expected), rel=4e-13)
 
 
+@given(st.floats(-1e-15, 1e-15), st.one_of(st.just(0.0), st.floats(1e-12, 1e9)))
+def test_at_the_chemical_potential_half_the_states_are_filled(chemical_potential, temperature):
+    assert float(occupation(chemical_potential, chemical_potential, temperature)) == 0.5
+
+
+@pytest.mark.parametrize("function", [occupation, thermal_broadening])
+@pytest.mark.parametrize(
+    "shapes", [((), (), (4,)), ((3,), (), (2, 1)), ((), (2, 1), (1, 3)), ((2, 3), (2, 1), (2, 1)), ((1, 3), (), (2, 1))]
+)
+def test_energies_potentials_and_temperatures_of_any_shapes_that_broadcast_are_taken(function, shapes):
+    draw = np.random.default_rng(1)
+    energy, potential = (KT * draw.uniform(-1, 1, shape) for shape in shapes[:2])
+    temperature = np.where(draw.uniform(size=shapes[2]) < 0.5, 0.0, 300.0)
+    got = function(energy, potential, temperature)
+    each = np.broadcast(energy, potential, temperature)
+    assert got.shape == each.shape
+    assert got.ravel().tolist() == [float(function(*(float(part) for part in one))) for one in each]
+
+
 @given(st.floats(-700, 700))
 def test_a_hole_mirrors_an_electron(reduced):
     together = occupation(reduced * KT, 0.0, 300.0) + occupation(-reduced * KT, 0.0, 300.0)

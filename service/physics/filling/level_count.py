@@ -9,16 +9,13 @@ from numpy.typing import NDArray
 from service.physics.broadening import Broadening
 from service.physics.constants import BOLTZMANN
 from service.physics.filling.level_curve import LevelFunction, over_levels, spread
+from service.physics.filling.shell_balance import FULL_SHELL, ShellBalance
 from service.physics.filling.states import States
 from service.physics.levels.source import Ladder, LevelSource
-from service.physics.roots import increasing_root
 from service.physics.values import FloatArray, Values
 
 REACH = 45.0
 """Levels this many kT away from the chemical potential are full or empty to within exp(-45) = 3e-20."""
-
-FULL = 16.0 * float(np.finfo(np.float64).eps)
-"""A count this close to a full shell, relative, fills it: the rounding of a density times a volume."""
 
 
 class LevelCount(States):
@@ -88,13 +85,13 @@ class LevelCount(States):
         while True:
             ladder = self._levels(energy)
             room = self._degeneracy * np.cumsum(ladder.degeneracy)
-            place = int(np.searchsorted(room, count * (1.0 - FULL), side="left"))
+            place = int(np.searchsorted(room, count * (1.0 - FULL_SHELL), side="left"))
             if place < room.size - 1:
                 break
             energy *= 1.5
         held = count - (float(room[place - 1]) if place else 0.0)
         capacity = self._degeneracy * float(ladder.degeneracy[place])
-        full = abs(float(room[place]) - count) <= FULL * count
+        full = abs(float(room[place]) - count) <= FULL_SHELL * count
         return ladder, place, capacity if full else held
 
     def fermi_energy(self, density: Values) -> float:
@@ -130,13 +127,13 @@ class LevelCount(States):
         highest, following = float(ladder.edge[place]), float(ladder.edge[place + 1])
         ladder = self._levels(following + REACH * thermal_energy)
         first = int(np.searchsorted(ladder.edge, highest - REACH * thermal_energy))
-        balance = _Balance(
+        balance = ShellBalance(
             (ladder.edge[first:] - highest) / thermal_energy,
             self._degeneracy * ladder.degeneracy[first:],
             place - first,
             held,
         )
-        return highest + thermal_energy * balance.root((following - highest) / thermal_energy)
+        return highest + thermal_energy * balance.root()
 
     def carrier_density(self, chemical_potential: Values, temperature: Values) -> Values:
         return self._thermal(chemical_potential, temperature, _occupied)
@@ -169,65 +166,6 @@ class LevelCount(States):
     def ladder(self, highest: float, most: int) -> tuple[Ladder, int]:
         ladder = self._levels(max(highest, 0.0))
         return ladder.first(most), ladder.edge.size
-
-
-class _Balance:
-    """Electrons above the highest occupied shell against holes below and in it, as logarithms."""
-
-    def __init__(self, height: FloatArray, room: FloatArray, place: int, held: float) -> None:
-        self._below, self._above = slice(0, place), slice(place + 1, None)
-        self._height, self._log_room = height, np.log(room)
-        self._place, self._held, self._capacity = place, held, float(room[place])
-        self._mostly_full = held > 0.5 * self._capacity
-
-    def root(self, gap: float) -> float:
-        """Return (mu - E) / kT, E the highest occupied level, from the limit of T -> 0 outwards."""
-        missing = self._capacity - self._held
-        start = 0.5 * gap if missing <= 0.0 else math.log(self._held / missing)
-        step = 1.0
-        low = high = min(start, 0.5 * gap)
-        while self._difference(low)[0] > 0.0:
-            low -= step
-            step *= 2.0
-        step = 1.0
-        while self._difference(high)[0] < 0.0:
-            high += step
-            step *= 2.0
-        return float(increasing_root(self._difference, low, high, 1e-15 * max(1.0, abs(low), abs(high))))
-
-    def _difference(self, potential: Values) -> tuple[float, float]:
-        """Return ln(electrons) - ln(holes) and its slope; a part-filled shell counts on the side it is closer to."""
-        reduced = potential - self._height
-        log_filled = np.minimum(reduced, 0.0) - np.log1p(np.exp(-np.abs(reduced)))
-        log_empty = log_filled - reduced
-        electrons, holes = [self._log_room[self._above] + log_filled[self._above]], []
-        slopes_up, slopes_down = [np.exp(log_empty[self._above])], []
-        holes.append(self._log_room[self._below] + log_empty[self._below])
-        slopes_down.append(np.exp(log_filled[self._below]))
-        shell_filled = self._log_room[self._place] + log_filled[self._place]
-        shell_empty = self._log_room[self._place] + log_empty[self._place]
-        if self._mostly_full:
-            holes.append(np.atleast_1d(shell_empty))
-            slopes_down.append(np.atleast_1d(np.exp(log_filled[self._place])))
-            constant, side = self._capacity - self._held, electrons
-        else:
-            electrons.append(np.atleast_1d(shell_filled))
-            slopes_up.append(np.atleast_1d(np.exp(log_empty[self._place])))
-            constant, side = self._held, holes
-        if constant > 0.0:
-            side.append(np.array([math.log(constant)]))
-            (slopes_up if side is electrons else slopes_down).append(np.zeros(1))
-        up, up_slope = _log_sum(np.concatenate(electrons), np.concatenate(slopes_up))
-        down, down_slope = _log_sum(np.concatenate(holes), np.concatenate(slopes_down))
-        return up - down, up_slope + down_slope
-
-
-def _log_sum(logarithms: FloatArray, slopes: FloatArray) -> tuple[float, float]:
-    """Return ln of a sum of exponentials, and the mean of the terms' slopes, each weighed by its share."""
-    largest = float(logarithms.max())
-    parts = np.exp(logarithms - largest)
-    total = float(parts.sum())
-    return largest + math.log(total), float(np.dot(parts, slopes)) / total
 
 
 def _occupied(reduced: FloatArray) -> FloatArray:

@@ -27,10 +27,12 @@ class PerSample(States):
 
     @property
     def method(self) -> list[str]:  # type: ignore[override]
+        """Each sample's own way of its last solve."""
         return [str(sample.method) for sample in self._samples]
 
     @property
     def relative_error_bound(self) -> Values:  # type: ignore[override]
+        """Each sample's own bound, after its last solve [1]."""
         return np.array([sample.relative_error_bound for sample in self._samples], dtype=np.float64)
 
     @property

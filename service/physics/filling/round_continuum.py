@@ -68,14 +68,14 @@ class RoundContinuum:
     family: Family
 
     def filled(self, energy: Values) -> Values:
-        """Return what the levels below an energy above zero hold at T = 0."""
+        """Return what the levels below an energy above zero hold at T = 0 [1]."""
         total: Values = 0.0
         for k, term in enumerate(_TERMS[self.family]):
             total = total + term / math.gamma(2.5 - k / 2.0) * energy ** (1.5 - k / 2.0)
         return total
 
     def slope(self, energy: Values) -> Values:
-        """Return the derivative of `filled`."""
+        """Return the derivative of `filled` [1]."""
         total: Values = 0.0
         for k, term in enumerate(_TERMS[self.family][:3]):
             total = total + term / math.gamma(1.5 - k / 2.0) * energy ** (0.5 - k / 2.0)
@@ -89,7 +89,7 @@ class RoundContinuum:
         )
 
     def thermal(self, potential: Values, warmth: float, derivative: int = 0) -> Values:
-        """Return what the levels hold at kT = `warmth`, or its first derivative by the chemical potential."""
+        """Return what the levels hold at kT = `warmth`, or its derivative by the chemical potential [1]."""
         total: Values = 0.0
         for k, term in enumerate(_TERMS[self.family][: 5 - derivative]):
             power = 1.5 - k / 2.0 - derivative

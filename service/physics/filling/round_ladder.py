@@ -44,15 +44,15 @@ class RoundLadder:
     Attributes
     ----------
     numbers : ndarray of int, shape (L, 2)
-        m and n, or l and n.
+        m and n, or l and n [1].
     lowest : float
-        The lowest level above the band edge, the square of the first zero.
+        The lowest level above the band edge, the square of the first zero [1].
     edge, degeneracy : ndarray, shape (L,)
-        The levels, and how many orbital levels each is.
+        The levels, and how many orbital levels each is [1].
     room, energy : ndarray, shape (L + 1,)
-        Orbital levels in the first so many entries, and the sum of their energies.
+        Orbital levels in the first so many entries, and the sum of their energies [1].
     end : float
-        The energy from which on levels are missing.
+        The energy from which on levels are missing [1].
     """
 
     def __init__(self, family: Family) -> None:

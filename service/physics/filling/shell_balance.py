@@ -7,6 +7,9 @@ import numpy as np
 from service.physics.roots import increasing_root
 from service.physics.values import FloatArray, Values
 
+FULL_SHELL = 16.0 * float(np.finfo(np.float64).eps)
+"""A count of carriers this close to a full shell, relative, fills it: the rounding of a density times a volume."""
+
 
 class ShellBalance:
     r"""Electrons above the highest occupied level against holes below it.
@@ -20,7 +23,7 @@ class ShellBalance:
     capacity : ndarray, shape (L,)
         What each holds when full, spin and valleys counted [1].
     place : int
-        The place of the highest occupied level.
+        The place of the highest occupied level [1].
     held : float
         What that level holds at T = 0, its capacity where it is full [1].
 

@@ -9,8 +9,7 @@ from service.physics.fermi_dirac import fermi_dirac_integral
 from service.physics.filling.clusters import Kernel
 from service.physics.filling.round import RoundWalls
 from service.physics.filling.round_curve import REACH, SHARP, occupations
-from service.physics.filling.shell_balance import ShellBalance
-from service.physics.filling.valley_groups import FULL_SHELL
+from service.physics.filling.shell_balance import FULL_SHELL, ShellBalance
 from service.physics.roots import increasing_root
 from service.physics.values import FloatArray, Values
 

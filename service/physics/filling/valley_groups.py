@@ -8,13 +8,11 @@ import numpy as np
 from numpy.typing import NDArray
 
 from service.physics.broadening import Broadening
+from service.physics.filling.shell_balance import FULL_SHELL
 from service.physics.filling.states import States
 from service.physics.levels.source import Ladder
 from service.physics.roots import increasing_root
 from service.physics.values import FloatArray, Values, choose, largest, logarithm, smallest
-
-FULL_SHELL = 16.0 * float(np.finfo(np.float64).eps)
-"""A count of carriers this close to a full shell, relative, fills it: the rounding of a density times a volume."""
 
 
 class ValleyGroups(States):
@@ -36,6 +34,7 @@ class ValleyGroups(States):
 
     @property
     def method(self) -> str | list[str]:  # type: ignore[override]
+        """The way of the group that approximates or adds up the most."""
         methods = [group.method for group in self._groups]
         if isinstance(methods[0], list):
             return [_roughest(own) for own in zip(*methods, strict=True)]
@@ -43,6 +42,7 @@ class ValleyGroups(States):
 
     @property
     def relative_error_bound(self) -> Values:  # type: ignore[override]
+        """The largest bound of a group, and no less than the root's own tolerance [1]."""
         # The root's own tolerance stands beside the largest bound of a group.
         return reduce(largest, [1e-14, *(group.relative_error_bound for group in self._groups)])
 

@@ -10,9 +10,9 @@ from hypothesis import given
 from hypothesis import strategies as st
 from scipy.integrate import quad
 
-from external_values import parameters, value
+from external_values import parameters, rows, value
 from service.physics.broadening import Broadening
-from service.physics.constants import BOLTZMANN, ELECTRON_MASS, REDUCED_PLANCK
+from service.physics.constants import BOLTZMANN, ELECTRON_MASS, ELEMENTARY_CHARGE, REDUCED_PLANCK
 from service.physics.filling.ideal import IdealGas
 
 DENSITY = {3: 1e28, 2: 1e18, 1: 1e9}
@@ -123,10 +123,138 @@ def test_carriers_above_and_energies_are_integrals_over_the_density_of_states(di
         ends = [first, *(mark for mark in (step, step + 1) if mark > first), step + 9]
         return sum(quad(occupied, a, b, args=(power,), epsrel=1e-12, limit=200)[0] for a, b in pairwise(ends))
 
+    # The integral of g f over all energies is the density; quad is asked for 1e-12 of each of four panels.
+    assert density == pytest.approx(integrate(0, 0.0), rel=1e-10)
     start = max(potential, 0.3 * thermal_energy)
     assert states.carriers_above(start, potential, temperature) == pytest.approx(integrate(0, start), rel=1e-10)
     assert states.carriers_above(0.0, potential, temperature) == pytest.approx(density, rel=1e-13)
     assert states.energy_density(potential, temperature) == pytest.approx(integrate(1, 0.0), rel=1e-10)
+
+
+def parabolic(*quantities):
+    files = ("metals_handbook", "metals_handbook_rs", "metals_registry", "semiconductors")
+    return [
+        pytest.param(row, id=row["id"])
+        for file in files
+        for row in rows(file)
+        if row["quantity"] in quantities and "nonparabolicity" not in row["inputs"]
+    ]
+
+
+def gas_of(row):
+    """Return a row's gas and its density."""
+    inputs = row["inputs"]
+    dimensions = DIMENSIONS[inputs["dimension"]["value"]] if "dimension" in inputs else 3
+    mass, valleys = (
+        value(row, name) if name in inputs else 1.0 for name in ("effective_mass_ratio", "valley_degeneracy")
+    )
+    density = next(value(row, name) for name in ("carrier_density", "sheet_density", "line_density") if name in inputs)
+    return IdealGas(dimensions, mass * ELECTRON_MASS, 2.0 * valleys), density
+
+
+def tolerance_of(row):
+    # A printed value's band is its own rounding. A computed one stands on this edition of the constants with 14 digits.
+    return row["tolerance_rel"] if row["kind"] == "rounded" else 1e-13
+
+
+@pytest.mark.parametrize("row", parabolic("fermi_energy"))
+def test_the_fermi_energy_is_the_one_in_print(row):
+    states, density = gas_of(row)
+    got = states.fermi_energy(density) / ELEMENTARY_CHARGE
+    assert got == pytest.approx(row["expected"], rel=tolerance_of(row)), f"{row['source']} ({row['provenance']})"
+
+
+@pytest.mark.parametrize("row", parabolic("chemical_potential"))
+def test_the_chemical_potential_of_a_semiconductor_is_what_the_source_says(row):
+    (states, density), temperature = gas_of(row), value(row, "temperature")
+    got = states.chemical_potential(density, temperature) / ELEMENTARY_CHARGE
+    # Where mu crosses zero its own digits mean nothing: those of kT do.
+    scale = max(abs(row["expected"]), BOLTZMANN * temperature / ELEMENTARY_CHARGE)
+    assert abs(got - row["expected"]) <= tolerance_of(row) * scale, f"{row['source']} ({row['provenance']})"
+
+
+@pytest.mark.parametrize("row", parabolic("effective_density_of_states"))
+def test_a_dilute_semiconductor_has_the_effective_density_of_states_in_print(row):
+    name = "effective_mass_ratio" if "effective_mass_ratio" in row["inputs"] else "per_valley_dos_mass_ratio"
+    states = IdealGas(3, value(row, name) * ELECTRON_MASS, 2.0 * value(row, "valley_degeneracy"))
+    temperature = value(row, "temperature")
+    dilute = states.carrier_density(-50.0 * BOLTZMANN * temperature, temperature)
+    assert dilute * math.exp(50.0) == pytest.approx(row["expected"], rel=tolerance_of(row)), (
+        f"{row['source']} ({row['provenance']})"
+    )
+
+
+@pytest.mark.parametrize("row", parabolic("density_of_states_2d"))
+def test_a_sheet_has_the_density_of_states_in_print(row):
+    degeneracy = value(row, "spin_degeneracy") * value(row, "valley_degeneracy")
+    states = IdealGas(2, value(row, "effective_mass_ratio") * ELECTRON_MASS, degeneracy)
+    got = states.density_of_states(1e-21) * 1e-3 * ELEMENTARY_CHARGE
+    assert got == pytest.approx(row["expected"], rel=tolerance_of(row)), f"{row['source']} ({row['provenance']})"
+
+
+@pytest.mark.parametrize("row", parameters("thermal", "T_over_TF_where_mu_is_zero"))
+def test_the_chemical_potential_crosses_the_edge_where_the_source_says(row):
+    states, density = gas(3), DENSITY[3]
+    temperature = row["expected"] * states.fermi_energy(density) / BOLTZMANN
+    eta = states.chemical_potential(density, temperature) / (BOLTZMANN * temperature)
+    # d eta / d ln T = -(3/2) F_1/2(0) / F_-1/2(0) = -1.9.
+    assert abs(eta) <= 1.9 * row["tolerance_rel"] + states.relative_error_bound, row["source"]
+
+
+LAW = {"decades": st.floats(-8, 4), "temperature_decades": st.floats(-2, 5), "factor": st.floats(1.001, 1e3)}
+
+
+@pytest.mark.parametrize("dimensions", [1, 2, 3])
+@given(**LAW)
+def test_the_chemical_potential_rises_with_the_density(dimensions, decades, temperature_decades, factor):
+    states, density, temperature = gas(dimensions), DENSITY[dimensions] * 10.0**decades, 10.0**temperature_decades
+    assert states.chemical_potential(factor * density, temperature) > states.chemical_potential(density, temperature)
+
+
+@pytest.mark.parametrize("dimensions", [2, 3])
+@given(**LAW)
+def test_in_bulk_and_in_a_sheet_the_chemical_potential_falls_with_temperature(
+    dimensions, decades, temperature_decades, factor
+):
+    states, density, cold = gas(dimensions), DENSITY[dimensions] * 10.0**decades, 10.0**temperature_decades
+    before, after = (states.chemical_potential(density, temperature) for temperature in (cold, factor * cold))
+    # Deep in degeneracy the fall, (T/T_F)^2 in bulk and exp(-T_F/T) in a sheet, drowns in the stated error.
+    assert after <= before + states.relative_error_bound * abs(before)
+    if cold * BOLTZMANN > 0.1 * states.fermi_energy(density):
+        assert after < before
+
+
+@given(st.floats(1e-3, 0.3), st.floats(-6, 2))
+def test_on_a_line_the_chemical_potential_first_rises_with_temperature(ratio, decades):
+    states, density = gas(1), DENSITY[1] * 10.0**decades
+    fermi_energy = states.fermi_energy(density)
+    cold, warm, hot = (
+        states.chemical_potential(density, factor * fermi_energy / BOLTZMANN) for factor in (0.5 * ratio, ratio, 3.0)
+    )
+    assert fermi_energy < cold < warm
+    assert hot < fermi_energy
+
+
+@pytest.mark.parametrize("dimensions", [1, 2, 3])
+@given(st.floats(-3, 3), st.floats(-3, 5), st.floats(0.01, 100.0))
+def test_energies_scale_with_temperature_where_the_states_do(dimensions, decades, temperature_decades, factor):
+    density, temperature = DENSITY[dimensions] * 10.0**decades, 10.0**temperature_decades
+    potential = gas(dimensions).chemical_potential(density, temperature)
+    filled = density * factor ** (dimensions / 2)
+    hotter = gas(dimensions).chemical_potential(filled, factor * temperature)
+    heavier = IdealGas(dimensions, factor * ELECTRON_MASS, 2.0).chemical_potential(filled, temperature)
+    doubled = gas(dimensions, 4.0).chemical_potential(2.0 * density, temperature)
+    for other in (hotter / factor, heavier, doubled):
+        # Twice the stated error, and the rounding of the density's own factor.
+        assert abs(other - potential) <= 2.1e-14 * max(abs(potential), BOLTZMANN * temperature)
+
+
+def test_at_the_fermi_level_of_the_most_dilute_line_there_are_states():
+    # The least density that the service takes: its Fermi energy of 1.5e-298 J times a mass is no double.
+    states = gas(1)
+    fermi_energy = states.fermi_energy(1e-130)
+    assert 2 * fermi_energy * states.density_of_states(fermi_energy) == pytest.approx(1e-130, rel=1e-14)
+    assert states.states_below(fermi_energy) == pytest.approx(1e-130, rel=1e-14)
 
 
 @pytest.mark.parametrize("dimensions", [1, 2, 3])
