@@ -6,8 +6,8 @@ from typing import Any, cast
 import numpy as np
 
 from service.calculators.cautions import Caution, curve_cautions, sample_cautions
-from service.calculators.cost import refuse_enormous, within_levels
-from service.calculators.curve import DEFAULT_POINTS, default_energies, edge_on_grid, mean_over_cells, relative_energies
+from service.calculators.cost import refuse_enormous, refuse_long_curve, within_levels
+from service.calculators.curve import default_energies, edge_on_grid, mean_over_cells, relative_energies
 from service.calculators.ladder import Levels, levels
 from service.calculators.sample import ElectronGas, Sample, electron_gas, refuse_vanishing
 from service.errors import Fault, SampleError
@@ -74,7 +74,7 @@ def density_of_states(
         Where the states are lines that nothing broadens, or the sample has no answer.
     """
     gas = electron_gas(sample)
-    refuse_enormous(gas, DEFAULT_POINTS if energies is None else energies.size)
+    refuse_enormous(gas)
     states = gas.states
     shape = line_shape(gas, broadening)
     lowest = gas.per_sample(states.lowest_level)
@@ -84,6 +84,7 @@ def density_of_states(
     if energies is None:
         energies = default_energies(gas, fermi_energy, chemical_potential)
     relative = relative_energies(gas, energies)
+    refuse_long_curve(gas, relative, 0.0 if shape.kind == "none" else shape.width)
     on_edge: Any = np.zeros(relative.shape, dtype=bool)
     if shape.kind == "none":
         on_edge = edge_on_grid(states, relative, energies)

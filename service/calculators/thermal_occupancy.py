@@ -7,8 +7,8 @@ import numpy as np
 from numpy.typing import NDArray
 
 from service.calculators.cautions import Caution, curve_cautions, sample_cautions, step_cautions
-from service.calculators.cost import refuse_enormous, within_levels
-from service.calculators.curve import DEFAULT_POINTS, default_energies, edge_on_grid, mean_over_cells, relative_energies
+from service.calculators.cost import refuse_enormous, refuse_long_curve, within_levels
+from service.calculators.curve import default_energies, edge_on_grid, mean_over_cells, relative_energies
 from service.calculators.ladder import Levels, levels
 from service.calculators.sample import ElectronGas, Sample, electron_gas, refuse_vanishing
 from service.physics.occupancy import occupation, thermal_broadening, transition_width
@@ -80,7 +80,7 @@ def thermal_occupancy(sample: Sample, energies: FloatArray | None = None) -> The
         Where the sample, as stated, has no answer, or would cost too much.
     """
     gas = electron_gas(sample)
-    refuse_enormous(gas, DEFAULT_POINTS if energies is None else energies.size)
+    refuse_enormous(gas)
     states = gas.states
     lowest = gas.per_sample(states.lowest_level)
     fermi_energy = states.fermi_energy(gas.density)
@@ -89,6 +89,7 @@ def thermal_occupancy(sample: Sample, energies: FloatArray | None = None) -> The
     if energies is None:
         energies = default_energies(gas, fermi_energy, chemical_potential)
     relative = relative_energies(gas, energies)
+    refuse_long_curve(gas, relative)
     occupied = occupation(relative, _column(chemical_potential), _column(sample.temperature))
     on_edge = edge_on_grid(states, relative, energies)
     return ThermalOccupancy(

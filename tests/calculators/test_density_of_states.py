@@ -6,6 +6,7 @@ import numpy as np
 import pytest
 from scipy.integrate import cumulative_simpson
 
+from near import near
 from samples import KINDS, WITH_CURVE, batch, sample
 from service.calculators.curve import DEFAULT_POINTS
 from service.calculators.density_of_states import density_of_states
@@ -24,7 +25,7 @@ def test_states_below_the_fermi_energy_hold_all_carriers(kind):
     fermi_energy = fermi_level(one).fermi_energy
     curve = density_of_states(one, np.array([0.5 * fermi_energy, fermi_energy, 1.5 * fermi_energy]))
     # The states below E vary by (E/n) dn/dE, a few, times the rounding of E itself.
-    assert curve.integrated_states[1] == pytest.approx(one.carrier_density, rel=1e-13)
+    assert curve.integrated_states[1] == near(one.carrier_density, rel=1e-13)
     assert (np.diff(curve.integrated_states) > 0).all()
 
 
@@ -37,7 +38,7 @@ def test_the_integral_is_that_of_the_density_of_states(kind, shape):
     grown = cumulative_simpson(curve.density_of_states, x=energies, initial=0)
     # Simpson's own error at a step of 0.009 widths is below 1e-9 of the whole rise.
     rise = curve.integrated_states - curve.integrated_states[0]
-    assert rise == pytest.approx(grown, rel=1e-8, abs=1e-8 * grown[-1])
+    assert rise == near(grown, rel=1e-8, abs=1e-8 * grown[-1])
 
 
 @pytest.mark.parametrize("kind", WITH_CURVE)
@@ -46,7 +47,7 @@ def test_thermally_broadened_states_at_the_chemical_potential_hold_all_carriers(
     potential = fermi_level(one).chemical_potential
     curve = density_of_states(one, np.array([potential]), Broadening("thermal", np.nan))
     # The definition of the chemical potential; the bound is that of mu, times dln n / d(mu / kT) < 10.
-    assert curve.integrated_states[0] == pytest.approx(one.carrier_density, rel=1e-11)
+    assert curve.integrated_states[0] == near(one.carrier_density, rel=1e-11)
 
 
 @pytest.mark.parametrize("kind", KINDS)
@@ -59,7 +60,7 @@ def test_a_batch_gives_each_sample_what_it_gives_alone(kind):
     for row, one in enumerate(ones):
         alone = density_of_states(one, energies, SHAPES[0])
         for name in ("density_of_states", "integrated_states"):
-            assert getattr(together, name)[row] == pytest.approx(getattr(alone, name), rel=1e-13), name
+            assert getattr(together, name)[row] == near(getattr(alone, name), rel=1e-13), name
 
 
 @pytest.mark.parametrize("kind", ["box", "sphere"])
@@ -94,7 +95,7 @@ def test_a_line_has_the_mean_of_its_cell_on_its_edge_and_says_so():
     curve = density_of_states(one, energies)
     assert [caution.code for caution in curve.cautions if caution.code == "edge-on-grid"] == ["edge-on-grid"]
     half_cell = density_of_states(one, np.array([0.5e-21])).integrated_states[0]
-    assert curve.density_of_states[1] == pytest.approx(half_cell / 1e-21, rel=1e-14)
+    assert curve.density_of_states[1] == near(half_cell / 1e-21, rel=1e-14)
     assert curve.density_of_states[0] == 0.0
     assert np.isfinite(curve.density_of_states).all()
 
@@ -103,7 +104,7 @@ def test_a_grid_in_any_order_gives_each_energy_its_own_value():
     energies = np.array([2.0, 0.0, 1.0, -1.0]) * 1e-21
     shuffled = density_of_states(sample("line"), energies)
     ordered = density_of_states(sample("line"), np.sort(energies))
-    assert shuffled.density_of_states[np.argsort(energies)] == pytest.approx(ordered.density_of_states, rel=1e-15)
+    assert shuffled.density_of_states[np.argsort(energies)] == near(ordered.density_of_states, rel=1e-15)
 
 
 @pytest.mark.parametrize("temperature", [0.0, 300.0])
@@ -117,7 +118,7 @@ def test_columns_of_levels_are_of_one_length_and_hold_all_carriers():
     lengths = {len(getattr(ladder, field.name)) for field in dataclasses.fields(ladder) if field.name != "total"}
     assert lengths == {ladder.total}
     # Levels above the reach of 40 kT hold less than a rounding.
-    assert ladder.share.sum() == pytest.approx(1, rel=1e-13)
+    assert ladder.share.sum() == near(1, rel=1e-13)
 
 
 def test_bulk_has_no_levels():

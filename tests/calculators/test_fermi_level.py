@@ -8,6 +8,7 @@ import pytest
 from hypothesis import given, settings
 from hypothesis import strategies as st
 
+from near import near
 from samples import KINDS, batch, sample
 from service.calculators.fermi_level import UNBOUNDED, fermi_level
 from service.errors import SampleError, Unsupported
@@ -37,7 +38,7 @@ def test_a_batch_gives_each_sample_what_it_gives_alone(kind):
             else:
                 # Energies against the larger of themselves and kT: mu may pass through zero.
                 scale = BOLTZMANN * one.temperature if "potential" in field.name else 0.0
-                assert many[row] == pytest.approx(single, rel=ROUNDING, abs=ROUNDING * scale), field.name
+                assert many[row] == near(single, rel=ROUNDING, abs=ROUNDING * scale), field.name
 
 
 @pytest.mark.parametrize(
@@ -60,15 +61,15 @@ def test_only_what_makes_no_sense_for_a_kind_is_absent(kind, absent):
 
 @pytest.mark.parametrize(("kind", "dimension"), [("bulk", 3), ("sheet", 2), ("line", 1)])
 def test_an_ideal_gas_has_its_own_dimension(kind, dimension):
-    assert fermi_level(sample(kind)).effective_dimension == pytest.approx(dimension, rel=ROUNDING)
+    assert fermi_level(sample(kind)).effective_dimension == near(dimension, rel=ROUNDING)
 
 
 def test_the_effective_dimension_of_a_film_runs_from_two_to_three():
     thin = fermi_level(sample("film", lengths={"thickness": 1e-9}))
     thick = fermi_level(sample("film", lengths={"thickness": 1e-4}))
-    assert thin.effective_dimension == pytest.approx(2, rel=ROUNDING)
+    assert thin.effective_dimension == near(2, rel=ROUNDING)
     # The surface term leaves pi / (2 k_F L) of relative order: 1e-5 here.
-    assert thick.effective_dimension == pytest.approx(3, rel=1e-4)
+    assert thick.effective_dimension == near(3, rel=1e-4)
 
 
 @pytest.mark.parametrize("kind", KINDS)
@@ -76,17 +77,17 @@ def test_wavevector_wavelength_and_velocity_follow_from_the_fermi_energy(kind):
     result = fermi_level(sample(kind))
     mass = 0.2 * ELECTRON_MASS
     momentum = math.sqrt(2 * mass * result.fermi_energy)
-    assert result.fermi_wavevector == pytest.approx(momentum / REDUCED_PLANCK, rel=ROUNDING)
-    assert result.fermi_wavelength * result.fermi_wavevector == pytest.approx(2 * math.pi, rel=ROUNDING)
-    assert result.fermi_velocity == pytest.approx(momentum / mass, rel=ROUNDING)
+    assert result.fermi_wavevector == near(momentum / REDUCED_PLANCK, rel=ROUNDING)
+    assert result.fermi_wavelength * result.fermi_wavevector == near(2 * math.pi, rel=ROUNDING)
+    assert result.fermi_velocity == near(momentum / mass, rel=ROUNDING)
 
 
 def test_bulk_follows_the_closed_form_with_valleys_spin_and_three_masses():
     result = fermi_level(sample("bulk", mass=(0.19, 0.19, 0.916), valleys=6.0, spin_degeneracy=2.0, temperature=0.0))
     mass = (0.19 * 0.19 * 0.916) ** (1 / 3) * ELECTRON_MASS
     wavevector = (6 * math.pi**2 * 2e25 / 12) ** (1 / 3)
-    assert result.fermi_wavevector == pytest.approx(wavevector, rel=ROUNDING)
-    assert result.fermi_energy == pytest.approx((REDUCED_PLANCK * wavevector) ** 2 / (2 * mass), rel=ROUNDING)
+    assert result.fermi_wavevector == near(wavevector, rel=ROUNDING)
+    assert result.fermi_energy == near((REDUCED_PLANCK * wavevector) ** 2 / (2 * mass), rel=ROUNDING)
     assert result.chemical_potential == result.fermi_energy
 
 
@@ -122,10 +123,10 @@ def test_a_round_shape_refuses_three_masses_and_names_the_rows(kind):
 def test_a_density_per_area_or_length_or_a_count_is_the_density_times_the_extent():
     by_volume = fermi_level(sample("film"))
     by_area = fermi_level(sample("film", carrier_density=2e25 * 12e-9, density_measure="area"))
-    assert by_area.fermi_energy == pytest.approx(by_volume.fermi_energy, rel=ROUNDING)
-    assert by_area.wigner_seitz_ratio == pytest.approx(by_volume.wigner_seitz_ratio, rel=ROUNDING)
+    assert by_area.fermi_energy == near(by_volume.fermi_energy, rel=ROUNDING)
+    assert by_area.wigner_seitz_ratio == near(by_volume.wigner_seitz_ratio, rel=ROUNDING)
     cylinder = fermi_level(sample("cylinder", carrier_density=2e25 * math.pi * 25e-18, density_measure="length"))
-    assert cylinder.fermi_energy == pytest.approx(fermi_level(sample("cylinder")).fermi_energy, rel=ROUNDING)
+    assert cylinder.fermi_energy == near(fermi_level(sample("cylinder")).fermi_energy, rel=ROUNDING)
 
 
 @given(
@@ -166,7 +167,7 @@ def test_a_thick_film_goes_over_into_bulk_by_its_surface_term(temperature):
     bulk = fermi_level(sample("bulk", temperature=temperature))
     excess = math.pi / (2 * bulk.fermi_wavevector * thickness)
     # The next term is of the square of the surface term.
-    assert film.fermi_energy / bulk.fermi_energy - 1 == pytest.approx(excess, rel=10 * excess)
+    assert film.fermi_energy / bulk.fermi_energy - 1 == near(excess, rel=10 * excess)
 
 
 def test_a_film_with_one_filled_subband_is_a_sheet_on_a_raised_floor():
@@ -176,14 +177,14 @@ def test_a_film_with_one_filled_subband_is_a_sheet_on_a_raised_floor():
     sheet = fermi_level(sample("sheet", carrier_density=1e15, temperature=4.2))
     assert film.occupied_levels == 1
     # Mean density and its film times thickness round once each; the second subband is empty to beyond a double.
-    assert film.chemical_potential_above_lowest_level == pytest.approx(sheet.chemical_potential, rel=ROUNDING)
+    assert film.chemical_potential_above_lowest_level == near(sheet.chemical_potential, rel=ROUNDING)
 
 
 def test_a_flat_wire_goes_over_into_a_film():
     wire = fermi_level(sample("wire", lengths={"width": 3e-6, "height": 5e-9}))
     film = fermi_level(sample("film", lengths={"thickness": 5e-9}))
     # The side walls leave a boundary term of order 1 / (k_F width).
-    assert wire.fermi_energy == pytest.approx(film.fermi_energy, rel=5 / (film.fermi_wavevector * 3e-6))
+    assert wire.fermi_energy == near(film.fermi_energy, rel=5 / (film.fermi_wavevector * 3e-6))
 
 
 def test_arrays_stay_finite_and_of_one_length():

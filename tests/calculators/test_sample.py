@@ -5,6 +5,7 @@ import math
 import numpy as np
 import pytest
 
+from near import near
 from samples import KINDS, batch, sample
 from service.calculators.sample import electron_gas
 from service.physics.constants import BOLTZMANN, ELECTRON_MASS
@@ -25,14 +26,14 @@ EXTENTS = {
 @pytest.mark.parametrize("kind", KINDS)
 def test_the_natural_density_is_the_mean_density_times_the_extent(kind):
     gas = electron_gas(sample(kind))
-    assert gas.extent == pytest.approx(EXTENTS[kind], rel=1e-15)
-    assert gas.density == pytest.approx(gas.mean_density * EXTENTS[kind], rel=1e-15)
+    assert gas.extent == near(EXTENTS[kind], rel=1e-15)
+    assert gas.density == near(gas.mean_density * EXTENTS[kind], rel=1e-15)
 
 
 @pytest.mark.parametrize(("kind", "mass"), [("bulk", (1 * 2 * 4) ** (1 / 3)), ("sheet", 2**0.5), ("line", 1.0)])
 def test_one_mass_stands_for_those_in_which_carriers_move(kind, mass):
     gas = electron_gas(sample(kind, mass=(1.0, 2.0, 4.0)))
-    assert gas.mass == pytest.approx(mass * ELECTRON_MASS, rel=1e-15)
+    assert gas.mass == near(mass * ELECTRON_MASS, rel=1e-15)
 
 
 def test_thermal_energy_and_degeneracy():

@@ -5,7 +5,8 @@ import shutil
 from collections.abc import Iterator
 
 import pytest
-from container.engine import PROGRAMS, Container, Engine
+
+from container_engine import PROGRAMS, Container, Engine
 
 
 @pytest.fixture(scope="session")

@@ -6,7 +6,8 @@ import threading
 import time
 
 import pytest
-from container.engine import BASE, IMAGE, Container, Engine
+
+from container_engine import BASE, IMAGE, Container, Engine
 
 GOLD = {
     "carrier_density": {"value": 5.90e22, "unit": "cm^-3"},

@@ -12,6 +12,7 @@ import pytest
 from hypothesis import given
 from hypothesis import strategies as st
 
+from near import near
 from service.physics.broadening import spread_level
 from service.physics.tables import GAUSSIAN_CHECKSUM
 
@@ -34,7 +35,7 @@ def test_a_shape_is_the_quadrature_of_its_definition(kind, dimensions):
     ).T
     for got, wanted in zip(spread_level(dimensions, kind, x, start), expected, strict=True):
         # Beneath 1e-300 a product of two exponentials may pass through the doubles that have lost their digits.
-        assert got == pytest.approx(wanted, rel=STATED, abs=1e-300)
+        assert got == near(wanted, rel=STATED, abs=1e-300)
 
 
 @pytest.mark.parametrize("dimensions", [1, 2, 3])
@@ -47,9 +48,9 @@ def test_a_lorentzians_integral_keeps_its_digits_close_to_its_start(dimensions, 
     ends = sum(spread_level(dimensions, "lorentzian", end)[0] for end in (x, start)) / 2
     integral = spread_level(dimensions, "lorentzian", x, start)[1]
     if 10.0**decades < 1e-3:
-        assert integral == pytest.approx((x - start) * ends, rel=STATED + 10.0 ** (2 * decades))
+        assert integral == near((x - start) * ends, rel=STATED + 10.0 ** (2 * decades))
     # And backwards it is its own negative, to the last digit or two.
-    assert spread_level(dimensions, "lorentzian", start, x)[1] == pytest.approx(-integral, rel=STATED)
+    assert spread_level(dimensions, "lorentzian", start, x)[1] == near(-integral, rel=STATED)
 
 
 @pytest.mark.parametrize("kind", ["gaussian", "lorentzian", "thermal"])
@@ -70,14 +71,14 @@ def smeared_power(power, x):
 def test_a_gaussian_is_a_parabolic_cylinder_function(dimensions, x):
     with mpmath.workdps(30):
         expected = [float(smeared_power(dimensions / 2, x)), float(smeared_power(dimensions / 2 + 1, x))]
-    assert spread_level(dimensions, "gaussian", x) == pytest.approx(expected, rel=STATED)
+    assert spread_level(dimensions, "gaussian", x) == near(expected, rel=STATED)
 
 
 def test_a_gaussian_line_is_a_bell_and_its_integral_the_error_function():
     for x in POINTS:
         with mpmath.workdps(30):
             expected = [float(mpmath.npdf(x)), float(mpmath.ncdf(x))]
-        assert spread_level(0, "gaussian", x) == pytest.approx(expected, rel=STATED)
+        assert spread_level(0, "gaussian", x) == near(expected, rel=STATED)
 
 
 @pytest.mark.parametrize("dimensions", [1, 2, 3])
@@ -91,13 +92,13 @@ def test_a_lorentzian_is_its_own_convolution(dimensions, x):
         outer = mpmath.sqrt(abs(x))
         points = sorted({mpmath.mpf(0), mpmath.mpf(1), *marks, outer + 10, 10 * outer + 100, mpmath.inf})
         expected = mpmath.quad(integrand, points) / mpmath.pi / mpmath.gamma(mpmath.mpf(dimensions) / 2)
-    assert spread_level(dimensions, "lorentzian", x)[0] == pytest.approx(float(expected), rel=STATED)
+    assert spread_level(dimensions, "lorentzian", x)[0] == near(float(expected), rel=STATED)
 
 
 def test_a_lorentzian_line_has_its_half_height_at_its_width():
     density, integral = spread_level(0, "lorentzian", np.array([-1.0, 0.0, 1.0]))
-    assert density == pytest.approx([0.5 / math.pi, 1 / math.pi, 0.5 / math.pi], rel=STATED)
-    assert integral == pytest.approx([0.25, 0.5, 0.75], rel=STATED)
+    assert density == near([0.5 / math.pi, 1 / math.pi, 0.5 / math.pi], rel=STATED)
+    assert integral == near([0.25, 0.5, 0.75], rel=STATED)
 
 
 @pytest.mark.parametrize("kind", ["gaussian", "lorentzian", "thermal"])
@@ -119,7 +120,7 @@ def test_the_integral_rises_by_the_density(kind, dimensions, x):
 def test_far_above_its_edge_a_level_is_sharp_again(kind, dimensions):
     x = 1e8
     # The leading correction is of relative order 1/x with the Lorentzian, 1/x^2 with the others.
-    assert spread_level(dimensions, kind, x)[0] == pytest.approx(
+    assert spread_level(dimensions, kind, x)[0] == near(
         x ** (dimensions / 2 - 1) / math.gamma(dimensions / 2), rel=2e-8
     )
 
@@ -133,7 +134,7 @@ def test_one_energy_and_many_agree(kind, dimensions):
         ones = [spread_level(dimensions, kind, float(x))[part] for x in grid]
         assert many[part].shape == (61, 1)
         # The thermal shape's two paths round apart by a unit of the last digit.
-        assert many[part].ravel() == pytest.approx(ones, rel=STATED, abs=1e-300)
+        assert many[part].ravel() == near(ones, rel=STATED, abs=1e-300)
 
 
 def test_the_tables_are_those_that_their_script_made():

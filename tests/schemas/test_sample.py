@@ -8,6 +8,7 @@ import pytest
 from hypothesis import given
 from hypothesis import strategies as st
 
+from near import near
 from schemas.fermi_level import FermiLevelRequest
 from schemas.units import look_up
 from schemas.vocabulary import KINDS
@@ -223,4 +224,4 @@ def test_a_length_in_any_unit_is_the_same_length(body, nanometres, unit):
     stated = body(geometry={"kind": "film", "thickness": {"value": look_up(unit).from_si(metres), "unit": unit}})
     read = REQUEST.load(stated)["sample"]["lengths"]["thickness"]
     # one conversion out and one in, each within one unit in the last place
-    assert read == pytest.approx(metres, rel=4 * np.finfo(float).eps)
+    assert read == near(metres, rel=4 * np.finfo(float).eps)

@@ -17,6 +17,7 @@ import pytest
 from hypothesis import given
 from hypothesis import strategies as st
 
+from near import near
 from schemas.units import DIMENSIONS, LONGEST, QUDT, SPELLINGS, look_up, read_table
 from service.physics import constants
 
@@ -62,7 +63,7 @@ def test_a_factor_is_the_double_nearest_to_the_size_in_pint(unit):
 @pytest.mark.parametrize("unit", UNITS_OF_PINT, ids=lambda unit: unit.symbol)
 def test_every_unit_agrees_with_pint(unit):
     # 1e-10: three powers of pint's own bohr, which is 2e-12 from CODATA's; the others agree to the last digit, above
-    assert unit.factor == pytest.approx(float(SIZES[unit.symbol]), rel=1e-10)
+    assert unit.factor == near(float(SIZES[unit.symbol]), rel=1e-10)
 
 
 @given(st.sampled_from(EXACT), NUMBERS)
@@ -107,10 +108,10 @@ def test_ucum_and_qudt_have_the_unit_in_the_same_size(row):
     assert unit.qudt == (QUDT + row["qudt"] if row["qudt"] else None)
     if row["ucum_size"]:
         # 1e-12: some sizes of that table went through a few roundings; a wrong prefix is off by 10
-        assert unit.factor == pytest.approx(float(row["ucum_size"]), rel=1e-12)
+        assert unit.factor == near(float(row["ucum_size"]), rel=1e-12)
     if row["qudt_size"]:
         # QUDT's hartree is of CODATA 1998, 2e-7 from that of 2022
-        assert unit.factor == pytest.approx(float(row["qudt_size"]), rel=2e-7 if "Ha" in row["symbol"] else 1e-12)
+        assert unit.factor == near(float(row["qudt_size"]), rel=2e-7 if "Ha" in row["symbol"] else 1e-12)
 
 
 def test_the_outside_sizes_cover_every_unit():

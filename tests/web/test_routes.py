@@ -8,6 +8,8 @@ import pytest
 from hypothesis import given, settings
 from hypothesis import strategies as st
 
+from near import near
+
 KINDS = ["bulk", "film", "wire", "cylinder", "box", "sphere", "sheet", "line"]
 PATHS = ["fermi-level", "density-of-states", "thermal-occupancy"]
 
@@ -79,7 +81,7 @@ def test_one_sample_gives_numbers_and_one_element_arrays_give_arrays(path, kind,
             assert isinstance(member["value"], list) and len(member["value"]) == 1
             assert member["unit"] == single["unit"]
             # A batch and a single differ by roundings at most.
-            assert member["value"][0] == pytest.approx(single["value"], rel=1e-13, abs=1e-300), name
+            assert member["value"][0] == near(single["value"], rel=1e-13, abs=1e-300), name
 
 
 @pytest.mark.parametrize("path", PATHS)
@@ -159,20 +161,18 @@ def test_other_units_in_give_the_same_out(length, density, post, sample_request)
     for name, member in expected.items():
         if isinstance(member, dict) and "value" in member:
             # Each conversion rounds once or twice.
-            assert got[name]["value"] == pytest.approx(member["value"], rel=1e-14), name
+            assert got[name]["value"] == near(member["value"], rel=1e-14), name
 
 
 def test_output_units_are_those_asked_for_and_si_is_si(post, sample_request):
     laboratory = post("fermi-level", sample_request("film")).json
     chosen = post("fermi-level", sample_request("film", output_units={"fermi_energy": "meV"})).json
     assert chosen["fermi_energy"]["unit"] == "meV"
-    assert chosen["fermi_energy"]["value"] == pytest.approx(1e3 * laboratory["fermi_energy"]["value"], rel=1e-15)
+    assert chosen["fermi_energy"]["value"] == near(1e3 * laboratory["fermi_energy"]["value"], rel=1e-15)
     assert chosen["lowest_level"] == laboratory["lowest_level"]
     si = post("fermi-level", sample_request("film", output_units="SI")).json
     assert {si[name]["unit"] for name in ("fermi_energy", "fermi_velocity", "fermi_wavelength")} == {"J", "m/s", "m"}
-    assert si["fermi_energy"]["value"] == pytest.approx(
-        laboratory["fermi_energy"]["value"] * 1.602176634e-19, rel=4e-16
-    )
+    assert si["fermi_energy"]["value"] == near(laboratory["fermi_energy"]["value"] * 1.602176634e-19, rel=4e-16)
 
 
 def test_arrays_are_paired_and_a_grid_is_crossed_in_c_order(post, sample_request):
@@ -194,7 +194,7 @@ def test_arrays_are_paired_and_a_grid_is_crossed_in_c_order(post, sample_request
                 ),
             ).json
             for name in ("chemical_potential", "fermi_energy", "reduced_temperature"):
-                assert crossed[name]["value"][place] == pytest.approx(alone[name]["value"], rel=1e-14)
+                assert crossed[name]["value"][place] == near(alone[name]["value"], rel=1e-14)
             place += 1
     refused = post("fermi-level", sample_request("bulk", carrier_density=density, temperature=temperature))
     assert refused.status_code == 422

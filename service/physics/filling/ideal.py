@@ -34,7 +34,7 @@ class IdealGas(States):
     Notes
     -----
     The chemical potential carries the error of the inverse integral, 4e-16 max(1, abs(eta)), and that of a dozen
-    roundings: 1e-14 covers both; 5e-16 is what was found from eta = -700 to 1e7 against mpmath.
+    roundings: 1e-14 covers both; 8e-16 is what was found from eta = -700 to 1e7 against mpmath.
 
     Exactly at the edge a line's density of states has no value: it is 0 here, as below the edge, never infinite.
     Whoever draws a curve puts the mean over the grid's cell there, from differences of `states_below`.

@@ -73,6 +73,9 @@ class LevelCount(States):
         root = math.sqrt(energy)
         return self._degeneracy * sum(term * root**power for power, term in enumerate(self._source.weyl))
 
+    def levels_estimate(self, highest: Values) -> float:
+        return self._source.count_estimate(max(0.0, float(highest)))
+
     def _levels(self, energy: float) -> Ladder:
         """Return the levels up to an energy, listed once for the highest that was asked."""
         if self._known is None or energy > self._known[0]:

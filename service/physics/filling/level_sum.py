@@ -67,6 +67,9 @@ class LevelSum(States):
         reach = self._most(float(density)) + REACH * BOLTZMANN * float(temperature)
         return self._source.count_estimate(reach)
 
+    def levels_estimate(self, highest: Values) -> float:
+        return self._source.count_estimate(max(0.0, float(highest)))
+
     def _levels(self, energy: float) -> Ladder:
         """Return the levels up to an energy, listed once for the highest that was asked."""
         if self._known is None or energy > self._known[0]:

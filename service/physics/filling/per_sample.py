@@ -75,6 +75,9 @@ class PerSample(States):
     def levels_below(self, energy: Values) -> Values:
         return self._each(lambda states, own: states.levels_below(own), energy)
 
+    def levels_estimate(self, highest: Values) -> Values:
+        return self._each(lambda states, own: states.levels_estimate(own), highest)
+
     def shows_edges(self, highest: float) -> bool:
         return any(sample.shows_edges(highest) for sample in self._samples)
 

@@ -68,6 +68,10 @@ class RoundWalls(States):
             return OWN_WORK
         return OWN_WORK + self._levels.points_estimate(potential, kernel)
 
+    def levels_estimate(self, highest: Values) -> float:
+        # Clusters stand for them, however many they are.
+        return OWN_WORK
+
     def shows_edges(self, highest: float) -> bool:
         # Past the levels that are listed a curve shows the smooth states.
         return self.free_dimensions == 1 and highest <= self._unit * self._levels.end

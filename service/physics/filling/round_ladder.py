@@ -10,7 +10,15 @@ from scipy.special import erfc
 
 from service.physics.filling.clusters import Kernel, LevelClusters
 from service.physics.filling.round_continuum import smooth_density
-from service.physics.levels.bessel_zeros import Family, bessel_zeros, orbital_degeneracy, zeros_between, zeros_up_to
+from service.physics.levels.bessel_zeros import (
+    MOST_ORDERS,
+    Family,
+    bessel_zeros,
+    orbital_degeneracy,
+    zeros_between,
+    zeros_up_to,
+)
+from service.physics.levels.source import TooManyLevels
 from service.physics.values import FloatArray
 
 LADDER_END: Final = 1250.0
@@ -95,15 +103,24 @@ class RoundLadder:
         """Return how many entries lie at or below an energy."""
         if energy <= self.end:
             return float(np.searchsorted(self.edge, energy, side="right"))
-        return zeros_up_to(self.family, self._wavenumber(energy))[0]
+        wavenumber = self._wavenumber(energy)
+        return zeros_up_to(self.family, wavenumber)[0] if wavenumber <= MOST_ORDERS else wavenumber**2 / 8.0
 
     def orbitals_below(self, energy: FloatArray, inclusive: bool = False) -> FloatArray:
         """Return how many orbital levels lie below each energy, or up to and including it, to within two roundings."""
         energy = energy * (1.0 + (ROUNDING if inclusive else -ROUNDING))
         counts = self.room[np.searchsorted(self.edge, energy, side="right" if inclusive else "left")]
         for place in np.flatnonzero(energy > self.end):
-            counts.ravel()[place] = zeros_up_to(self.family, self._wavenumber(float(energy.ravel()[place])))[1]
+            counts.ravel()[place] = self._orbitals_beyond(self._wavenumber(float(energy.ravel()[place])))
         return counts
+
+    def _orbitals_beyond(self, wavenumber: float) -> float:
+        """Return the orbital levels up to a wave number: counted as far as that is fast, else Weyl's smooth count."""
+        if wavenumber <= MOST_ORDERS:
+            return zeros_up_to(self.family, wavenumber)[1]
+        if self.family == "cylinder":
+            return wavenumber**2 / 4.0 - wavenumber / 2.0
+        return 2.0 / (9.0 * math.pi) * wavenumber**3 - wavenumber**2 / 4.0
 
     def between(self, low: float, high: float) -> tuple[FloatArray, FloatArray, float]:
         """Return the levels above one energy and up to another, their degeneracies, and the orbital levels below."""
@@ -111,6 +128,9 @@ class RoundLadder:
         if high <= self.end:
             last = int(np.searchsorted(self.edge, high, side="right"))
             return self.edge[first:last], self.degeneracy[first:last], float(self.room[first])
+        entries = self.entries_within(max(low, self.end), high)
+        if entries > 2 * MOST_ZEROS:
+            raise TooManyLevels(entries)
         start = max(self._wavenumber(low), LADDER_END)
         zeros, below = zeros_between(self.family, start, self._wavenumber(high))
         edge, degeneracy = self._energy(zeros.zero), orbital_degeneracy(self.family, zeros.order)
@@ -130,6 +150,8 @@ class RoundLadder:
         top = _top(high, kernel)
         if top <= self.end:
             return True
+        if self._wavenumber(top) > MOST_ORDERS:
+            return False
         damping = 2.0 * kernel.blur / self._wavenumber(high)
         return damping < DAMPED and self.entries_within(self._window_start(low), top) <= MOST_ZEROS
 

@@ -130,6 +130,9 @@ class ValleyGroups(States):
     def levels_below(self, energy: Values) -> Values:
         return self._total(lambda group, offset: group.levels_below(energy - _like(offset, energy)))
 
+    def levels_estimate(self, highest: Values) -> Values:
+        return self._total(lambda group, _: group.levels_estimate(highest))
+
     def shows_edges(self, highest: float) -> bool:
         return any(group.shows_edges(highest) for group in self._groups)
 

@@ -12,6 +12,7 @@ from typing import Final, Literal
 import numpy as np
 from numpy.typing import NDArray
 
+from service.physics.levels.source import TooManyLevels
 from service.physics.tabulated import table
 from service.physics.values import FloatArray
 
@@ -151,6 +152,10 @@ def _tabulated(family: Family) -> BesselZeros:
     return result
 
 
+MOST_ORDERS: Final = 1_000_000
+"""Orders that one count may run over, half a second of work: the largest bound of a zero."""
+
+
 def zeros_between(family: Family, low: float, high: float) -> tuple[BesselZeros, float]:
     r"""Return the zeros in a window beyond the table, and how many orbital levels lie below the window.
 
@@ -177,6 +182,8 @@ def zeros_between(family: Family, low: float, high: float) -> tuple[BesselZeros,
     ------
     ValueError
         If the window begins below 1000, where the table serves.
+    TooManyLevels
+        If it ends beyond a million.
 
     Notes
     -----
@@ -249,6 +256,8 @@ def zeros_up_to(family: Family, bound: float) -> tuple[float, float]:
 
 def _orders_up_to(family: Family, bound: float) -> tuple[NDArray[np.int32], FloatArray]:
     """Return the orders whose zeros may lie up to a bound, and the index nu of each."""
+    if bound > MOST_ORDERS:
+        raise TooManyLevels(bound * bound / 8.0)
     orders = np.arange(math.floor(bound) + 1, dtype=np.int32)
     return orders, orders.astype(np.float64) + (0.5 if family == "sphere" else 0.0)
 

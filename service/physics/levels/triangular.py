@@ -88,10 +88,11 @@ def airy_zeros(count: int) -> FloatArray:
     first = first + value / slope
     if count <= _TABULATED:
         return np.asarray(first)
-    inverse_square = (3.0 * math.pi / 8.0 * (4.0 * np.arange(_TABULATED + 1, count + 1) - 1.0)) ** -2.0
+    square = (3.0 * math.pi / 8.0 * (4.0 * np.arange(_TABULATED + 1, count + 1) - 1.0)) ** 2
+    inverse_square = 1.0 / square
     series = inverse_square * (
         5.0 / 48.0
         - inverse_square
         * (5.0 / 36.0 - inverse_square * (77125.0 / 82944.0 - inverse_square * 108056875.0 / 6967296.0))
     )
-    return np.concatenate([first, inverse_square ** (-1.0 / 3.0) * (1.0 + series)])
+    return np.concatenate([first, np.cbrt(square) * (1.0 + series)])

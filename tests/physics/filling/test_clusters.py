@@ -7,6 +7,7 @@ import pytest
 from hypothesis import given, settings
 from hypothesis import strategies as st
 
+from near import near
 from service.physics.fermi_dirac import fermi_dirac_integral
 from service.physics.filling.clusters import LEAF, Kernel, LevelClusters
 
@@ -28,7 +29,7 @@ def test_clusters_stand_for_levels_in_sums_of_occupations(potential, decades, or
     got = float(np.sum(weights * fermi_dirac_integral(order, (potential - edges) / warmth)))
     expected = float(np.sum(ROOM * fermi_dirac_integral(order, (potential - LEVELS) / warmth)))
     # 22 points leave 1e-17 of each cluster; the weights of both signs sum to three times their total: rounding.
-    assert got == pytest.approx(expected, rel=1e-14)
+    assert got == near(expected, rel=1e-14)
     assert edges.size < 1500
 
 
@@ -39,15 +40,17 @@ def test_clusters_stand_for_levels_in_sums_with_a_root_or_a_pole_at_the_energy(e
     below = edges < energy
     for power in (0.5, -0.5, 1.5):
         got = float(np.sum(weights[below] * (energy - edges[below]) ** power))
-        assert got == pytest.approx(float(np.sum(ROOM[energy > LEVELS] * (energy - LEVELS[energy > LEVELS]) ** power)))
-    assert np.sum(weights[below]) == pytest.approx(ROOM[energy > LEVELS].sum(), rel=1e-14)
+        assert got == near(
+            float(np.sum(ROOM[energy > LEVELS] * (energy - LEVELS[energy > LEVELS]) ** power)), rel=1e-12
+        )
+    assert np.sum(weights[below]) == near(ROOM[energy > LEVELS].sum(), rel=1e-14)
 
 
 def test_one_list_of_points_serves_a_range_of_energies():
     edges, weights = CLUSTERS.points(3e4, 3.2e4, Kernel(0.0, math.inf, math.inf))
     for energy in (3e4, 3.13e4, 3.2e4):
         got = float(np.sum(weights / np.hypot(energy - edges, 0.3)))
-        assert got == pytest.approx(float(np.sum(ROOM / np.hypot(energy - LEVELS, 0.3))), rel=1e-13)
+        assert got == near(float(np.sum(ROOM / np.hypot(energy - LEVELS, 0.3))), rel=1e-13)
 
 
 def test_few_levels_are_themselves():
@@ -68,4 +71,4 @@ def test_any_number_of_levels_can_be_clustered(size):
     some = LevelClusters(LEVELS[:size], ROOM[:size])
     edges, weights = some.points(9e4, 9e4, Kernel(0.0, math.inf, math.inf))
     got = float(np.sum(weights * np.sqrt(9e4 - edges)))
-    assert got == pytest.approx(float(np.sum(ROOM[:size] * np.sqrt(9e4 - LEVELS[:size]))), rel=1e-14)
+    assert got == near(float(np.sum(ROOM[:size] * np.sqrt(9e4 - LEVELS[:size]))), rel=1e-14)

@@ -9,6 +9,7 @@ from hypothesis import given, settings
 from hypothesis import strategies as st
 
 from external_values import parameters, value
+from near import near
 from service.physics.bands import Band
 from service.physics.broadening import Broadening
 from service.physics.constants import BOLTZMANN, ELECTRON_MASS, ELEMENTARY_CHARGE, REDUCED_PLANCK
@@ -68,7 +69,7 @@ def test_the_chemical_potential_is_that_of_a_plain_sum_over_levels(thickness, de
     scale = max(abs(got + states.lowest_level), BOLTZMANN * temperature)
     assert abs(got - float(expected)) <= states.relative_error_bound * scale
     many = film(np.array([thickness] * 2)).chemical_potential(np.array([density] * 2), np.array([temperature] * 2))
-    assert many == pytest.approx([got] * 2, rel=1e-14, abs=1e-14 * BOLTZMANN * temperature)
+    assert many == near([got] * 2, rel=1e-14, abs=1e-14 * BOLTZMANN * temperature)
 
 
 def test_a_cold_film_with_one_subband_keeps_its_digits_above_it():
@@ -76,7 +77,7 @@ def test_a_cold_film_with_one_subband_keeps_its_digits_above_it():
     states = film(1e-9, 1.0)
     got = states.chemical_potential(5e9, 0.001)
     expected = exact_chemical_potential(states, 5e9, 0.001, got)
-    assert got == pytest.approx(float(expected), rel=1e-14)
+    assert got == near(float(expected), rel=1e-14)
     assert abs(got) < 1e-6 * states.lowest_level
 
 
@@ -88,7 +89,7 @@ def test_the_density_comes_back_over_six_decades_of_thickness(thickness, density
     potential = states.chemical_potential(per_area, 10.0**temperature)
     eta = abs(potential) / (BOLTZMANN * 10.0**temperature)
     # d ln n / d eta is at most 1 in the dilute limit and D/2 over eta in the filled: eta roundings and a few more.
-    assert states.carrier_density(potential, 10.0**temperature) == pytest.approx(per_area, rel=2e-14 + 1e-15 * eta)
+    assert states.carrier_density(potential, 10.0**temperature) == near(per_area, rel=2e-14 + 1e-15 * eta)
 
 
 @pytest.mark.parametrize(
@@ -102,7 +103,7 @@ def test_a_film_is_what_the_source_says(row):
     states = film(thickness, mass)
     density = value(row, "carrier_density") * thickness
     got = states.lowest_level + states.chemical_potential(density, value(row, "temperature"))
-    assert got / EV == pytest.approx(row["expected"], rel=row["tolerance_rel"]), row["source"]
+    assert got / EV == near(row["expected"], rel=row["tolerance_rel"]), row["source"]
 
 
 @given(st.floats(1e-3, 1e21))
@@ -111,7 +112,7 @@ def test_at_zero_temperature_the_filled_subbands_hold_all_carriers(ratio):
     states = film(20e-9)
     density = ratio * states.density_of_states(0.0) * states.lowest_level
     filled = states.fermi_energy(density)
-    assert states.states_below(filled) == pytest.approx(density, rel=4e-15)
+    assert states.states_below(filled) == near(density, rel=4e-15)
     assert states.levels_below(filled) <= states.levels_below(filled * (1 + 1e-12) + 1e-40)
     many = film(np.full(2, 20e-9)).fermi_energy(np.full(2, density))
     assert many.tolist() == [filled] * 2
@@ -147,7 +148,7 @@ def test_the_energy_is_the_sum_over_levels(thickness, density, temperature):
             total += edge * thermal_energy * mpmath.log1p(mpmath.exp(reduced)) + thermal_energy**2 * first
         expected = float(per_energy * total)
     # The energy follows mu, whose own bound is 1e-13, by d ln U / d ln mu of 5/2 at most.
-    assert got == pytest.approx(expected, rel=5e-13)
+    assert got == near(expected, rel=5e-13)
 
 
 @pytest.mark.parametrize("temperature", [4.2, 300.0])
@@ -165,7 +166,7 @@ def test_carriers_above_an_energy_are_the_tails_of_the_levels(thickness, density
     terms = np.maximum(reduced, 0) + np.log1p(np.exp(-np.abs(reduced)))
     # A plain sum of positive terms; each rounds as (mu - E)/kT does, a few hundred times 1e-16.
     expected = states.density_of_states(0.0) * thermal_energy * math.fsum(terms)
-    assert got == pytest.approx(expected, rel=1e-12)
+    assert got == near(expected, rel=1e-12)
 
 
 @pytest.mark.parametrize("width", [1e-4, 1e-3, 0.03])
@@ -190,8 +191,8 @@ def check_spread(thickness, kind, width, energies):
             expected = reference_spread(states, float(energy), kind, width * EV)
             # The closed forms lose the ratio of the energy to the width at most; below the edge a Gaussian's argument
             # (50 meV / 0.1 meV) enters squared: 1e5 roundings, where anything is left at all.
-            assert density[place] == pytest.approx(expected[0], rel=1e-10, abs=1e-250), energy
-            assert integrated[place] == pytest.approx(expected[1], rel=1e-10, abs=1e-12 * scale), energy
+            assert density[place] == near(expected[0], rel=1e-10, abs=1e-250), energy
+            assert integrated[place] == near(expected[1], rel=1e-10, abs=1e-12 * scale), energy
 
 
 def reference_spread(states, energy, kind, width):
@@ -234,7 +235,7 @@ def test_mixed_sizes_in_one_batch_are_each_their_own():
     many = film(thickness).chemical_potential(1e25 * thickness, temperature)
     for row in range(61):
         one = film(float(thickness[row])).chemical_potential(1e25 * float(thickness[row]), float(temperature[row]))
-        assert many[row] == pytest.approx(one, rel=1e-13)
+        assert many[row] == near(one, rel=1e-13)
 
 
 def test_a_curve_of_a_batch_is_that_of_each_sample():
@@ -244,21 +245,21 @@ def test_a_curve_of_a_batch_is_that_of_each_sample():
     for row, one in enumerate(thickness):
         alone = film(float(one))
         rows = np.stack([energies, energies])
-        assert together.states_below(rows)[row] == pytest.approx(alone.states_below(energies), rel=1e-14)
+        assert together.states_below(rows)[row] == near(alone.states_below(energies), rel=1e-14)
         assert together.density_of_states(rows)[row].tolist() == alone.density_of_states(energies).tolist()
         spread = together.spread_states(rows, Broadening("gaussian", 0.01 * EV))
-        assert spread[0][row] == pytest.approx(alone.spread_states(energies, Broadening("gaussian", 0.01 * EV))[0])
+        assert spread[0][row] == near(alone.spread_states(energies, Broadening("gaussian", 0.01 * EV))[0], rel=1e-13)
 
 
 def test_the_ladder_lists_the_first_levels_and_counts_them_all():
     states = film(20e-9)
     ladder, total = states.ladder(1.0 * EV, 5)
     assert ladder.quantum_numbers.tolist() == [[1], [2], [3], [4], [5]]
-    assert ladder.edge == pytest.approx(states.lowest_level * np.array([0, 3, 8, 15, 24]), rel=1e-15)
+    assert ladder.edge == near(states.lowest_level * np.array([0, 3, 8, 15, 24]), rel=1e-15)
     assert total == math.floor(math.sqrt(1 + EV / states.lowest_level))
     assert states.ladder(0.0, 5)[1] == 1
 
 
 def test_the_lowest_level_is_that_of_a_box():
     expected = (math.pi * REDUCED_PLANCK / 12e-9) ** 2 / (2 * 0.916 * ELECTRON_MASS)
-    assert film(12e-9, (0.19, 0.19, 0.916)).lowest_level == pytest.approx(expected, rel=1e-15)
+    assert film(12e-9, (0.19, 0.19, 0.916)).lowest_level == near(expected, rel=1e-15)

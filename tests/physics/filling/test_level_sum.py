@@ -9,6 +9,7 @@ import pytest
 from scipy.integrate import quad
 
 from external_values import parameters, value
+from near import near
 from round_levels import RoundLevels
 from service.physics.broadening import Broadening
 from service.physics.constants import BOLTZMANN, ELECTRON_MASS, ELEMENTARY_CHARGE
@@ -74,7 +75,7 @@ def test_a_wire_is_what_the_source_says(row):
     states = wire(width, height, mass)
     filled = states.fermi_energy(value(row, "carrier_density") * width * height)
     got = states.levels_below(filled) if "subbands" in row["quantity"] else (states.lowest_level + filled) / EV
-    assert got == pytest.approx(row["expected"], rel=row["tolerance_rel"]), row["source"]
+    assert got == near(row["expected"], rel=row["tolerance_rel"]), row["source"]
 
 
 @pytest.mark.parametrize("states", [wire(), LevelSum(RoundLevels("cylinder", 18e-9, MASS), 1, MASS, 2.0)])
@@ -99,21 +100,21 @@ def test_energy_and_carriers_above_are_integrals_over_the_density_of_states(stat
         return total
 
     # quad's own bound of 1e-9 on each piece.
-    assert states.carriers_above(0.0, potential, temperature) == pytest.approx(density, rel=1e-12)
-    assert integral(0.0, 0) == pytest.approx(density, rel=1e-7)
-    assert states.energy_density(potential, temperature) == pytest.approx(integral(0.0, 1), rel=1e-7)
+    assert states.carriers_above(0.0, potential, temperature) == near(density, rel=1e-12)
+    assert integral(0.0, 0) == near(density, rel=1e-7)
+    assert states.energy_density(potential, temperature) == near(integral(0.0, 1), rel=1e-7)
     start = potential + 0.3 * thermal_energy
     if start > 0:
-        assert states.carriers_above(start, potential, temperature) == pytest.approx(integral(start, 0), rel=1e-7)
+        assert states.carriers_above(start, potential, temperature) == near(integral(start, 0), rel=1e-7)
 
 
 def test_the_ground_state_is_the_limit_of_the_cold_one():
     states = wire()
     cold, ground = states.chemical_potential(2e9, 1e-4), states.chemical_potential(2e9, 0.0)
     # The next correction goes with (kT)^2 over the distance to the nearest edge: far below 1e-9 at 0.1 mK.
-    assert cold == pytest.approx(ground, rel=1e-9)
-    assert states.states_below(ground) == pytest.approx(2e9, rel=1e-13)
-    assert states.energy_density(cold, 1e-4) == pytest.approx(states.ground_energy_density(2e9), rel=1e-9)
+    assert cold == near(ground, rel=1e-9)
+    assert states.states_below(ground) == near(2e9, rel=1e-13)
+    assert states.energy_density(cold, 1e-4) == near(states.ground_energy_density(2e9), rel=1e-9)
 
 
 def reference_lorentzian(states, source, energy, width):
@@ -145,7 +146,7 @@ def test_a_lorentzian_over_a_wire_takes_in_every_level_to_infinity():
         got = states.spread_states(energy, Broadening("lorentzian", width))[0]
         # The reference's sharp cut leaves the levels' ripple at k L of some hundreds: 1e-5 of the tail, itself a few
         # per cent of the whole.
-        assert got == pytest.approx(reference_lorentzian(states, source, energy, width), rel=1e-5)
+        assert got == near(reference_lorentzian(states, source, energy, width), rel=1e-5)
 
 
 def test_a_lorentzian_over_a_ladder_without_end_or_law_is_refused():
@@ -159,9 +160,7 @@ def test_a_finite_well_and_a_parabola_fill_as_films_do():
         states = LevelSum(source, 2, MASS, 2.0)
         density = 5e15
         filled = states.fermi_energy(density)
-        assert states.states_below(filled) == pytest.approx(density, rel=1e-13)
+        assert states.states_below(filled) == near(density, rel=1e-13)
         potential = states.chemical_potential(density, 300.0)
-        assert states.carrier_density(potential, 300.0) == pytest.approx(density, rel=1e-12)
-        assert states.spread_states(potential, Broadening("thermal", BOLTZMANN * 300))[1] == pytest.approx(
-            density, rel=1e-12
-        )
+        assert states.carrier_density(potential, 300.0) == near(density, rel=1e-12)
+        assert states.spread_states(potential, Broadening("thermal", BOLTZMANN * 300))[1] == near(density, rel=1e-12)

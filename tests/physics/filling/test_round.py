@@ -10,6 +10,7 @@ from hypothesis import given, settings
 from hypothesis import strategies as st
 
 from external_values import parameters, value
+from near import near
 from round_levels import RoundLevels
 from service.physics.broadening import Broadening
 from service.physics.constants import BOLTZMANN, ELECTRON_MASS, ELEMENTARY_CHARGE, REDUCED_PLANCK
@@ -65,7 +66,7 @@ def test_subbands_of_a_cylinder_lie_where_the_source_says(row):
     numbers = [round(value(row, "azimuthal_number")), round(value(row, "radial_number"))]
     place = ladder.quantum_numbers.tolist().index(numbers)
     edge = states.lowest_level + ladder.edge[place]
-    assert edge / EV == pytest.approx(row["expected"], rel=row["tolerance_rel"]), row["source"]
+    assert edge / EV == near(row["expected"], rel=row["tolerance_rel"]), row["source"]
     assert ladder.degeneracy[place] == 2.0
 
 
@@ -83,7 +84,7 @@ def test_a_sphere_closes_its_shells_at_the_magic_numbers_of_a_spherical_well(ele
     assert ladder.quantum_numbers[-1].tolist() == [order, number]
     assert 2.0 * ladder.degeneracy.sum() == electrons
     middle = 0.5 * (filled + states.fermi_energy(electrons + 0.5))
-    assert states.ground_chemical_potential(float(electrons)) == pytest.approx(middle, rel=3e-16)
+    assert states.ground_chemical_potential(float(electrons)) == near(middle, rel=3e-16)
     assert states.ground_chemical_potential(electrons - 0.5) == filled
     assert states.levels_below(filled) == electrons / 2
 
@@ -144,8 +145,8 @@ def test_the_chemical_potential_is_that_of_the_plain_sum(shape, decades, warmth_
     scale = max(abs(expected + brute.lowest_level), BOLTZMANN * warm)
     # Both state a bound of 1e-13 and 1e-12; a count's own rounding moves mu by 16 roundings of it over the slope.
     assert abs(got - expected) < 1e-12 * scale
-    assert states.fermi_energy(density) == pytest.approx(brute.fermi_energy(density), rel=3e-14)
-    assert states.ground_energy_density(density) == pytest.approx(brute.ground_energy_density(density), rel=1e-12)
+    assert states.fermi_energy(density) == near(brute.fermi_energy(density), rel=3e-14)
+    assert states.ground_energy_density(density) == near(brute.ground_energy_density(density), rel=1e-12)
 
 
 @pytest.mark.parametrize("shape", SHAPES)
@@ -156,17 +157,15 @@ def test_densities_energies_and_tails_are_those_of_the_plain_sum(shape, warmth):
     for name in ("carrier_density", "compressibility"):
         got, expected = getattr(states, name)(energies, warm), getattr(brute, name)(energies, warm)
         # Below all levels a slope is conditioned by mu / kT, up to 1e5 roundings.
-        assert got == pytest.approx(expected, rel=1e-11, abs=1e-300)
+        assert got == near(expected, rel=1e-11, abs=1e-300)
         # One energy alone has points of its own, and so a rounding of its own.
-        assert getattr(states, name)(float(energies[4]), warm) == pytest.approx(got[4], rel=1e-14)
+        assert getattr(states, name)(float(energies[4]), warm) == near(got[4], rel=1e-14)
     potential = 9e3 * UNIT
-    assert states.energy_density(potential, warm) == pytest.approx(brute.energy_density(potential, warm), rel=1e-14)
+    assert states.energy_density(potential, warm) == near(brute.energy_density(potential, warm), rel=1e-14)
     for start in (0.0, 8.9e3, 9e3, 9e3 + 10.0 * warmth):
         got = states.carriers_above(start * UNIT, potential, warm)
         # A tail far above mu is conditioned by mu / kT.
-        assert got == pytest.approx(
-            brute.carriers_above(start * UNIT, potential, warm), rel=1e-13 + 1e-15 * 1e4 / warmth
-        )
+        assert got == near(brute.carriers_above(start * UNIT, potential, warm), rel=1e-13 + 1e-15 * 1e4 / warmth)
 
 
 @pytest.mark.parametrize("shape", SHAPES)
@@ -174,12 +173,12 @@ def test_sharp_states_are_those_of_the_plain_sum(shape):
     states, brute = sample(shape), plain(shape)
     energies = UNIT * np.linspace(-10.0, 3e4, 211)
     # A sphere's count is whole; a cylinder's is a sum of thousands of roots.
-    assert states.states_below(energies) == pytest.approx(brute.states_below(energies), rel=1e-14)
+    assert states.states_below(energies) == near(brute.states_below(energies), rel=1e-14)
     assert states.levels_below(energies).tolist() == brute.levels_below(energies).tolist()
     assert states.levels_below(float(energies[100])) == brute.levels_below(float(energies[100]))
     if shape == "cylinder":
         # An edge's own divergence multiplies the rounding of the distance from it.
-        assert states.density_of_states(energies) == pytest.approx(brute.density_of_states(energies), rel=1e-11)
+        assert states.density_of_states(energies) == near(brute.density_of_states(energies), rel=1e-11)
         assert states.density_of_states(0.0) == 0.0
     else:
         with pytest.raises(ValueError, match="lines"):
@@ -189,7 +188,7 @@ def test_sharp_states_are_those_of_the_plain_sum(shape):
     assert total == other_total
     assert ladder.quantum_numbers.tolist() == other.quantum_numbers.tolist()
     assert ladder.degeneracy.tolist() == other.degeneracy.tolist()
-    assert ladder.edge == pytest.approx(other.edge, rel=1e-15)
+    assert ladder.edge == near(other.edge, rel=1e-15)
     # A level's own edge is found again after a change of units.
     place = 17
     step = ladder.degeneracy[place]
@@ -207,10 +206,10 @@ def test_broadened_states_are_those_of_the_plain_sum(shape, kind, width):
     expected, expected_integral = plain(shape).spread_states(energies, shape_of)
     # The plain Lorentzian stops its levels by a narrower taper, good to 1e-8; the others differ by rounding alone.
     tolerance = 1e-7 if kind == "lorentzian" else 1e-10
-    assert density == pytest.approx(expected, rel=tolerance, abs=1e-13 * expected.max())
-    assert integral == pytest.approx(expected_integral, rel=tolerance, abs=1e-8 * expected_integral.max())
+    assert density == near(expected, rel=tolerance, abs=1e-13 * expected.max())
+    assert integral == near(expected_integral, rel=tolerance, abs=1e-8 * expected_integral.max())
     one = sample(shape).spread_states(float(energies[7]), shape_of)
-    assert one == pytest.approx((density[7], integral[7]), rel=1e-9)
+    assert one == near((density[7], integral[7]), rel=1e-9)
 
 
 @pytest.mark.parametrize("shape", SHAPES)
@@ -223,7 +222,7 @@ def test_a_lorentzians_integral_is_the_integral_of_its_density(shape):
     expected = 5.0 * UNIT * float(np.sum(weights * density.reshape(points.shape)))
     _, integral = states.spread_states(3000.0 * UNIT, Broadening("lorentzian", width * UNIT))
     # Panels of a third of the width: the quadrature is exact to 1e-15; the integral's start cancels to 1e-12.
-    assert integral == pytest.approx(expected, rel=1e-11)
+    assert integral == near(expected, rel=1e-11)
 
 
 @pytest.mark.parametrize("shape", SHAPES)
@@ -237,9 +236,9 @@ def test_beyond_the_ladder_it_is_the_sum_over_all_zeros_still(shape, wavenumber,
     # Levels past 1600 weigh exp(-60) even at the highest potential and temperature.
     if potential + 45.0 * warmth < 1600.0**2:
         got = states.chemical_potential(density, temperature(warmth)) / UNIT
-        assert got == pytest.approx(potential, rel=1e-13 if shape == "cylinder" or warmth > 3.0 else 1e-9)
+        assert got == near(potential, rel=1e-13 if shape == "cylinder" or warmth > 3.0 else 1e-9)
         again = states.carrier_density(potential * UNIT, temperature(warmth))
-        assert again == pytest.approx(density, rel=1e-13)
+        assert again == near(density, rel=1e-13)
 
 
 @pytest.mark.parametrize("shape", SHAPES)
@@ -250,21 +249,21 @@ def test_beyond_the_ladder_it_is_exact_at_zero_temperature(shape):
         open_levels = edges <= potential
         if shape == "cylinder":
             filled = float(np.sum(room[open_levels] * np.sqrt(potential - edges[open_levels]))) / math.gamma(1.5)
-            assert states.fermi_energy(filled * ROOM[shape]) / UNIT == pytest.approx(potential, rel=1e-13)
+            assert states.fermi_energy(filled * ROOM[shape]) / UNIT == near(potential, rel=1e-13)
             above = potential - edges[open_levels]
             energy = np.sum(room[open_levels] * np.sqrt(above) * (edges[open_levels] + above / 3.0)) / math.gamma(1.5)
-            assert states.states_below(potential * UNIT) == pytest.approx(filled * ROOM[shape], rel=1e-13)
+            assert states.states_below(potential * UNIT) == near(filled * ROOM[shape], rel=1e-13)
         else:
             filled = float(room[open_levels].sum())
             last, following = edges[open_levels][-1], edges[~open_levels][0]
-            assert states.fermi_energy(filled * 2.0) / UNIT == pytest.approx(last, rel=1e-15)
+            assert states.fermi_energy(filled * 2.0) / UNIT == near(last, rel=1e-15)
             middle = states.ground_chemical_potential(filled * 2.0) / UNIT
-            assert middle == pytest.approx(0.5 * (last + following), rel=1e-15)
+            assert middle == near(0.5 * (last + following), rel=1e-15)
             energy = np.sum(room[open_levels] * edges[open_levels])
             assert states.states_below(potential * UNIT) == 2.0 * filled
         # The ground energy's deep part is the smooth count's: the taper averages the ripple to 1e-11 of itself.
         got = states.ground_energy_density(filled * ROOM[shape]) / UNIT / ROOM[shape]
-        assert got == pytest.approx(energy, rel=1e-12)
+        assert got == near(energy, rel=1e-12)
         assert states.levels_below(potential * UNIT) == room[open_levels].sum()
         assert states.ladder(potential * UNIT, 5)[1] == np.count_nonzero(open_levels)
     assert states.method == "level-sum"
@@ -285,7 +284,7 @@ def test_where_warmth_damps_the_shells_the_continuum_takes_over_without_a_jump(s
             found[name] = one.relative_error_bound
             # Either way's density is the other's, to the bounds of both.
             other = one._continuum.thermal(potential / UNIT + one._levels.lowest, BOLTZMANN * warm / UNIT)
-            assert float(other) * ROOM[shape] == pytest.approx(density, rel=2e-13)
+            assert float(other) * ROOM[shape] == near(density, rel=2e-13)
         assert found["continuum"] < 3e-13
 
 
@@ -308,7 +307,7 @@ def test_past_all_lists_the_continuums_bound_holds_and_shrinks(shape, power):
     warm = 0.0 if shape == "cylinder" else temperature(1e7)
     potential = huge.chemical_potential(density, warm) / UNIT
     assert huge.method == "continuum"
-    assert huge.relative_error_bound == pytest.approx(20.0 * potential ** (power / 2.0), rel=1.0)
+    assert huge.relative_error_bound == near(20.0 * potential ** (power / 2.0), rel=1.0)
     assert huge.work(density, warm) < 1e4
 
 
@@ -320,21 +319,21 @@ def test_past_all_lists_the_smooth_states_hang_together(shape):
     # dn/dmu by a difference whose error is (step / kT)^2 / 24.
     step = 1e-3 * BOLTZMANN * warm
     rise = states.carrier_density(potential + step, warm) - states.carrier_density(potential - step, warm)
-    assert states.compressibility(potential, warm) == pytest.approx(rise / (2.0 * step), rel=1e-5)
+    assert states.compressibility(potential, warm) == near(rise / (2.0 * step), rel=1e-5)
     assert states.carriers_above(0.5 * potential, potential, warm) < density
     # Free carriers of three dimensions hold 3/5 of the Fermi energy each; surface and warmth add a few parts in 1e3.
-    assert states.energy_density(potential, warm) / density == pytest.approx(0.6 * potential, rel=1e-2)
+    assert states.energy_density(potential, warm) / density == near(0.6 * potential, rel=1e-2)
     curve = np.array([0.9, 1.0]) * potential
-    assert states.states_below(curve)[1] == pytest.approx(density, rel=1e-3)
+    assert states.states_below(curve)[1] == near(density, rel=1e-3)
     for kind in ("gaussian", "lorentzian", "thermal"):
         smeared, integral = states.spread_states(curve, Broadening(kind, 1e-4 * potential))
-        assert smeared[1] == pytest.approx(states.compressibility(potential, warm), rel=1e-2)
-        assert integral[1] == pytest.approx(density, rel=1e-2)
+        assert smeared[1] == near(states.compressibility(potential, warm), rel=1e-2)
+        assert integral[1] == near(density, rel=1e-2)
     if shape == "cylinder":
-        assert states.density_of_states(curve)[1] == pytest.approx(smeared[1], rel=1e-2)
+        assert states.density_of_states(curve)[1] == near(smeared[1], rel=1e-2)
         filled = ROOM[shape] * 1e17
         ground = states.ground_energy_density(filled)
-        assert ground / filled == pytest.approx(0.6 * states.fermi_energy(filled), rel=1e-2)
+        assert ground / filled == near(0.6 * states.fermi_energy(filled), rel=1e-2)
 
 
 @pytest.mark.parametrize("shape", SHAPES)
@@ -347,7 +346,7 @@ def test_a_large_sample_is_bulk_with_less_room_at_its_surface(shape):
     filled = states.lowest_level + states.fermi_energy(density * extent)
     # dE/E = (2/3) (3 pi / 8) S / (V k_F), with S / V = 4 / d or 6 / d: H. P. Baltes, E. R. Hilf (1976).
     surface = math.pi / 4.0 * (4.0 if shape == "cylinder" else 6.0) / (100e-9 * wavenumber)
-    assert filled / bulk - 1.0 == pytest.approx(surface, rel=0.03)
+    assert filled / bulk - 1.0 == near(surface, rel=0.03)
 
 
 @given(st.floats(-9.0, 9.0), st.floats(-6.0, 12.0), st.sampled_from(sorted(SHAPES)))
@@ -379,7 +378,7 @@ def test_a_hot_dilute_gas_is_maxwells(shape):
         potential = states.chemical_potential(1e-9 * ROOM[shape], temperature(warmth)) + states.lowest_level
         # Next terms: 0.014 sqrt(t) of 1 / 4 t, and the gas's own degeneracy, 1e-9 / trace.
         expected = math.log(1e-9 / trace)
-        assert potential / (BOLTZMANN * temperature(warmth)) == pytest.approx(expected, abs=0.3 * t**1.5 + 1e-12)
+        assert potential / (BOLTZMANN * temperature(warmth)) == near(expected, abs=0.3 * t**1.5 + 1e-12)
 
 
 @pytest.mark.parametrize("shape", SHAPES)
@@ -388,7 +387,7 @@ def test_the_carriers_above_the_lowest_level_are_all_even_past_all_lists(shape):
         states, warm = sample(shape), temperature(warmth)
         density = states.carrier_density(2.0 * UNIT, warm)
         start = 0.0 if shape == "cylinder" else -UNIT
-        assert states.carriers_above(start, 2.0 * UNIT, warm) == pytest.approx(density, rel=1e-12)
+        assert states.carriers_above(start, 2.0 * UNIT, warm) == near(density, rel=1e-12)
         some = states.carriers_above(BOLTZMANN * warm, 2.0 * UNIT, warm)
         assert 0.1 * density < some < density
 
@@ -403,11 +402,11 @@ def test_a_poor_guess_costs_steps_and_not_digits(shape):
         if shape == "cylinder" or warmth > 1.0:
             for guess in (-1e9 if shape == "cylinder" else -1e3 * warmth, exact - 300.0, exact + 1000.0 * warmth):
                 scale = max(abs(exact), warmth)
-                assert solve(filled, warmth, guess, kernel) == pytest.approx(exact, rel=0, abs=1e-13 * scale)
+                assert solve(filled, warmth, guess, kernel) == near(exact, rel=0, abs=1e-13 * scale)
     if shape == "cylinder":
         exact = states.fermi_energy(filled * ROOM[shape]) / UNIT
         for guess in (0.0, exact - 1000.0, exact + 1000.0):
-            assert states._ground(filled, guess) == pytest.approx(exact, rel=1e-15)
+            assert states._ground(filled, guess) == near(exact, rel=1e-15)
 
 
 def test_a_sphere_counts_far_beyond_the_ladder_and_in_the_end_gives_way_to_the_continuum():
@@ -421,7 +420,7 @@ def test_a_sphere_counts_far_beyond_the_ladder_and_in_the_end_gives_way_to_the_c
     assert huge.ground_chemical_potential(2e17) == highest
     assert huge.method == "continuum"
     # Free carriers in a large sphere: 3/5 of the Fermi energy each, the surface a part in 1e5.
-    assert huge.ground_energy_density(2e17) / 2e17 == pytest.approx(0.6 * highest, rel=1e-4)
+    assert huge.ground_energy_density(2e17) / 2e17 == near(0.6 * highest, rel=1e-4)
 
 
 def test_electrons_in_a_sphere_stay_put_down_to_a_microkelvin():
@@ -439,7 +438,7 @@ def test_a_sphere_is_filled_at_any_temperature_however_low(electrons):
     states = sample("sphere")
     cold = states.chemical_potential(electrons, 0.0)
     for warm in (1e-6, 1e-12, 1e-30, 1e-200):
-        assert states.chemical_potential(electrons, warm) == pytest.approx(cold, rel=1e-6 if warm == 1e-6 else 1e-12)
+        assert states.chemical_potential(electrons, warm) == near(cold, rel=1e-6 if warm == 1e-6 else 1e-12)
 
 
 def test_one_sample_has_no_rows_and_states_its_work():

@@ -8,6 +8,7 @@ import pytest
 from hypothesis import given
 from hypothesis import strategies as st
 
+from near import near
 from service.physics.filling.shell_balance import ShellBalance
 
 
@@ -37,7 +38,7 @@ def test_the_balance_is_the_counts_own_root(gap, place, held):
     count = float(np.sum(capacity[:place])) + held
     # The issue asks 1e-11 kT; the logarithms' rounding over their slope leaves 1e-15 of the gap.
     expected = by_count(height, capacity, count)
-    assert ShellBalance(height, capacity, place, held).root() == pytest.approx(expected, rel=4e-15, abs=1e-14)
+    assert ShellBalance(height, capacity, place, held).root() == near(expected, rel=4e-15, abs=1e-14)
 
 
 @given(st.floats(50.0, 1e9), st.floats(1.0, 1e4), st.floats(1.0, 1e4))
@@ -45,13 +46,11 @@ def test_as_it_cools_mu_goes_to_the_middle_of_the_gap(gap, lower, upper):
     root = ShellBalance(np.array([0.0, gap]), np.array([lower, upper]), 0, lower).root()
     # exp(-gap / 2) is what is left out of the limit: R. Kubo, J. Phys. Soc. Jpn. 17, 975 (1962).
     expected = 0.5 * gap + 0.5 * math.log(lower / upper)
-    assert root == pytest.approx(
-        expected, rel=4e-16, abs=max(lower, upper) / min(lower, upper) * math.exp(-0.4 * gap) + 1e-13
-    )
+    assert root == near(expected, rel=4e-16, abs=max(lower, upper) / min(lower, upper) * math.exp(-0.4 * gap) + 1e-13)
 
 
 @given(st.floats(0.001, 0.999), st.floats(60.0, 1e9))
 def test_in_a_part_filled_level_mu_follows_from_its_share(share, gap):
     root = ShellBalance(np.array([-gap, 0.0, gap]), np.array([2.0, 6.0, 4.0]), 1, 6.0 * share).root()
     # Conditioned by the share's own rounding near an empty or a full level, a thousand times at most.
-    assert root == pytest.approx(math.log(share / (1.0 - share)), abs=1e-12)
+    assert root == near(math.log(share / (1.0 - share)), abs=1e-12)

@@ -5,6 +5,7 @@ from itertools import pairwise
 import numpy as np
 import pytest
 
+from near import near
 from service.physics.bands import Band
 from service.physics.broadening import Broadening
 from service.physics.constants import BOLTZMANN, ELECTRON_MASS, ELEMENTARY_CHARGE
@@ -41,8 +42,8 @@ def test_two_groups_of_a_silicon_layer_fill_to_one_level(density, temperature):
         held = [two.carrier_density(potential, temperature), four.carrier_density(potential - offset, temperature)]
     eta = abs(potential) / (BOLTZMANN * temperature) if temperature else 1.0
     # Each group's density rounds as eta does.
-    assert sum(held) == pytest.approx(density, rel=1e-13 + 1e-15 * eta)
-    assert both.shares(density, potential, temperature) == pytest.approx([part / density for part in held], rel=1e-12)
+    assert sum(held) == near(density, rel=1e-13 + 1e-15 * eta)
+    assert both.shares(density, potential, temperature) == near([part / density for part in held], rel=1e-12)
 
 
 def test_equal_groups_are_one_group_of_the_sum_of_their_valleys():
@@ -51,11 +52,11 @@ def test_equal_groups_are_one_group_of_the_sum_of_their_valleys():
     density = 1e26
     for temperature in (0.0, 300.0, 1e5):
         got, expected = groups.chemical_potential(density, temperature), six.chemical_potential(density, temperature)
-        assert got == pytest.approx(expected, rel=1e-13, abs=1e-13 * BOLTZMANN * temperature)
-    assert groups.ground_energy_density(density) == pytest.approx(six.ground_energy_density(density), rel=1e-13)
+        assert got == near(expected, rel=1e-13, abs=1e-13 * BOLTZMANN * temperature)
+    assert groups.ground_energy_density(density) == near(six.ground_energy_density(density), rel=1e-13)
     energies = np.linspace(-0.1, 1, 7) * EV
     for name in ("states_below", "density_of_states"):
-        assert getattr(groups, name)(energies) == pytest.approx(getattr(six, name)(energies), rel=1e-14)
+        assert getattr(groups, name)(energies) == near(getattr(six, name)(energies), rel=1e-14)
 
 
 def test_many_samples_are_each_their_own():
@@ -66,9 +67,9 @@ def test_many_samples_are_each_their_own():
     for row in range(3):
         alone = silicon(float(thickness[row]))[2]
         expected = alone.chemical_potential(1e16, float(temperature[row]))
-        assert many[row] == pytest.approx(expected, rel=1e-12)
+        assert many[row] == near(expected, rel=1e-12)
     kept = together.take(np.array([2])).chemical_potential(np.full(1, 1e16), temperature[2:])
-    assert kept[0] == pytest.approx(many[2], rel=1e-14)
+    assert kept[0] == near(many[2], rel=1e-14)
 
 
 @pytest.mark.parametrize("kind", ["thermal", "gaussian", "lorentzian"])
@@ -81,9 +82,9 @@ def test_broadened_states_are_those_of_the_groups(kind):
         two.spread_states(energies, Broadening(kind, width)),
         four.spread_states(energies - offset, Broadening(kind, width)),
     )
-    assert density == pytest.approx(parts[0][0] + parts[1][0], rel=1e-14)
+    assert density == near(parts[0][0] + parts[1][0], rel=1e-14)
     rise = np.diff(parts[0][1] + parts[1][1])
-    assert np.diff(integrated) == pytest.approx(rise, rel=1e-12)
+    assert np.diff(integrated) == near(rise, rel=1e-12)
 
 
 def test_energies_and_tails_add_up():
@@ -92,11 +93,11 @@ def test_energies_and_tails_add_up():
     potential = both.chemical_potential(1e17, temperature)
     energy = two.energy_density(potential, temperature) + four.energy_density(potential - offset, temperature)
     energy += offset * four.carrier_density(potential - offset, temperature)
-    assert both.energy_density(potential, temperature) == pytest.approx(energy, rel=1e-14)
+    assert both.energy_density(potential, temperature) == near(energy, rel=1e-14)
     above = two.carriers_above(potential, potential, temperature) + four.carriers_above(
         potential - offset, potential - offset, temperature
     )
-    assert both.carriers_above(potential, potential, temperature) == pytest.approx(above, rel=1e-14)
+    assert both.carriers_above(potential, potential, temperature) == near(above, rel=1e-14)
     assert both.compressibility(potential, temperature) > two.compressibility(potential, temperature)
 
 
@@ -122,6 +123,6 @@ def test_shells_of_two_groups_in_a_box_fill_in_order():
     for (edge, room), (following, _) in pairwise(levels[:13]):
         filled += room
         energy = both.lowest_level + both.fermi_energy(filled)
-        assert energy == pytest.approx(edge, rel=1e-12)
+        assert energy == near(edge, rel=1e-12)
         middle = both.lowest_level + both.chemical_potential(filled, 0.0)
-        assert middle == pytest.approx(0.5 * (edge + following), rel=1e-12)
+        assert middle == near(0.5 * (edge + following), rel=1e-12)
