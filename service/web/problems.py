@@ -9,7 +9,7 @@ from flask import Flask, Response, request
 from marshmallow import ValidationError
 from werkzeug.exceptions import HTTPException
 
-from schemas.problems import faults, pointer
+from schemas.problems import MOST, faults, pointer
 from schemas.result import NonFinite
 from service.errors import Fault, SampleError, TooLarge, Unsupported
 
@@ -111,12 +111,9 @@ def faults_of(found: Iterable[Fault]) -> list[dict[str, str]]:
         }
         for fault in found
     ]
-    if len(listed) > _MOST_FAULTS:
-        listed[_MOST_FAULTS - 1 :] = [{"pointer": "#", "detail": f"{len(listed) - _MOST_FAULTS + 1} more faults"}]
+    if len(listed) > MOST:
+        listed[MOST - 1 :] = [{"pointer": "#", "detail": f"{len(listed) - MOST + 1} more faults"}]
     return listed
-
-
-_MOST_FAULTS: Final = 100
 
 
 def _of_range(error: Exception) -> Response:

@@ -1,16 +1,14 @@
 """Any ladder of one sample whose levels are lines: a box or a sphere, filled with a count of carriers."""
 
 import math
-from typing import Self
 
 import numpy as np
-from numpy.typing import NDArray
 
 from service.physics.broadening import Broadening
 from service.physics.constants import BOLTZMANN
 from service.physics.filling.level_curve import LevelFunction, over_levels, spread
+from service.physics.filling.listed import ListedStates
 from service.physics.filling.shell_balance import FULL_SHELL, ShellBalance
-from service.physics.filling.states import States
 from service.physics.levels.source import Ladder, LevelSource
 from service.physics.values import FloatArray, Values
 
@@ -18,7 +16,7 @@ REACH = 45.0
 """Levels this many kT away from the chemical potential are full or empty to within exp(-45) = 3e-20."""
 
 
-class LevelCount(States):
+class LevelCount(ListedStates):
     r"""The states of one sample's ladder of lines.
 
     .. math:: N = \sum_i g\, d_i\, f(E_i)
@@ -41,24 +39,11 @@ class LevelCount(States):
     """
 
     free_dimensions = 0
-    method = "level-sum"
     relative_error_bound = 1e-12
 
     def __init__(self, source: LevelSource, degeneracy: float) -> None:
-        self._source = source
+        super().__init__(source, REACH)
         self._degeneracy = degeneracy
-        self._known: tuple[float, Ladder] | None = None
-
-    @property
-    def lowest_level(self) -> float:
-        return self._source.lowest
-
-    def take(self, rows: NDArray[np.intp] | NDArray[np.bool_]) -> Self:
-        raise TypeError("one sample has no rows to take")
-
-    def work(self, density: Values, temperature: Values) -> float:
-        reach = self._most(float(density)) + REACH * BOLTZMANN * float(temperature)
-        return self._source.count_estimate(reach)
 
     def _most(self, count: float) -> float:
         """Return an energy above the Fermi energy, found on Weyl's count before any level is listed."""
@@ -72,15 +57,6 @@ class LevelCount(States):
         assert self._source.weyl is not None
         root = math.sqrt(energy)
         return self._degeneracy * sum(term * root**power for power, term in enumerate(self._source.weyl))
-
-    def levels_estimate(self, highest: Values) -> float:
-        return self._source.count_estimate(max(0.0, float(highest)))
-
-    def _levels(self, energy: float) -> Ladder:
-        """Return the levels up to an energy, listed once for the highest that was asked."""
-        if self._known is None or energy > self._known[0]:
-            self._known = energy, self._source.levels_up_to(energy)
-        return self._known[1].up_to(energy)
 
     def _shells(self, count: float) -> tuple[Ladder, int, float]:
         """Return levels past the Fermi energy, the place of the highest that holds carriers, and what it holds."""
@@ -165,10 +141,6 @@ class LevelCount(States):
     def spread_states(self, energy: Values, broadening: Broadening) -> tuple[Values, Values]:
         density, integrated = spread(self._source, self._levels, 0, energy, broadening)
         return self._degeneracy * density / float(broadening.width), self._degeneracy * integrated
-
-    def ladder(self, highest: float, most: int) -> tuple[Ladder, int]:
-        ladder = self._levels(max(highest, 0.0))
-        return ladder.first(most), ladder.edge.size
 
 
 def _occupied(reduced: FloatArray) -> FloatArray:

@@ -1,17 +1,15 @@
 """Any ladder of one sample, filled level by level, each level a free gas of one or two dimensions on its edge."""
 
 import math
-from typing import Self
 
 import numpy as np
-from numpy.typing import NDArray
 
 from service.physics.broadening import Broadening
 from service.physics.constants import BOLTZMANN, REDUCED_PLANCK
 from service.physics.fermi_dirac import fermi_dirac_integral, fermi_dirac_tail, inverse_fermi_dirac_integral
 from service.physics.filling.level_curve import LevelFunction, over_levels, spread
-from service.physics.filling.states import States
-from service.physics.levels.source import Ladder, LevelSource
+from service.physics.filling.listed import ListedStates
+from service.physics.levels.source import LevelSource
 from service.physics.roots import increasing_root
 from service.physics.values import FloatArray, Values
 
@@ -19,7 +17,7 @@ REACH = 40.0
 """A level this many kT above the chemical potential holds exp(-40) = 4e-18 of its room."""
 
 
-class LevelSum(States):
+class LevelSum(ListedStates):
     r"""The states of one sample's ladder of subbands.
 
     .. math::
@@ -46,35 +44,13 @@ class LevelSum(States):
     J. H. Davies, The Physics of Low-dimensional Semiconductors (1998), sections 4.5 and 4.8; NIST DLMF 25.12.16.
     """
 
-    method = "level-sum"
     relative_error_bound = 1e-13
 
     def __init__(self, source: LevelSource, free_dimensions: int, free_mass: float, degeneracy: float) -> None:
         self.free_dimensions = free_dimensions
-        self._source = source
+        super().__init__(source, REACH)
         self._half = free_dimensions / 2.0
         self._per_energy = degeneracy * math.pow(free_mass / (2.0 * math.pi * REDUCED_PLANCK**2), self._half)
-        self._known: tuple[float, Ladder] | None = None
-
-    @property
-    def lowest_level(self) -> float:
-        return self._source.lowest
-
-    def take(self, rows: NDArray[np.intp] | NDArray[np.bool_]) -> Self:
-        raise TypeError("one sample has no rows to take")
-
-    def work(self, density: Values, temperature: Values) -> float:
-        reach = self._most(float(density)) + REACH * BOLTZMANN * float(temperature)
-        return self._source.count_estimate(reach)
-
-    def levels_estimate(self, highest: Values) -> float:
-        return self._source.count_estimate(max(0.0, float(highest)))
-
-    def _levels(self, energy: float) -> Ladder:
-        """Return the levels up to an energy, listed once for the highest that was asked."""
-        if self._known is None or energy > self._known[0]:
-            self._known = energy, self._source.levels_up_to(energy)
-        return self._known[1].up_to(energy)
 
     def _alone(self, density: float) -> float:
         """Return the Fermi energy if the lowest level had to hold all carriers: not below the true one."""
@@ -211,7 +187,3 @@ class LevelSum(States):
         """Return the sum over the levels within reach of each energy."""
         ladder = self._levels(max(float(np.max(energy)), 0.0) + reach)
         return over_levels(ladder, energy, level)
-
-    def ladder(self, highest: float, most: int) -> tuple[Ladder, int]:
-        ladder = self._levels(max(highest, 0.0))
-        return ladder.first(most), ladder.edge.size
