@@ -7,7 +7,6 @@ machines are noisy. Run with `pytest tests/benchmarks/test_request.py -s`.
 import http.client
 import json
 import multiprocessing
-import os
 import socket
 import time
 from pathlib import Path
@@ -37,6 +36,7 @@ REQUESTS = {
     },
 }
 ROUNDS = 7
+SHORT_ROUNDS, SHORT_ROUND = 25, 300
 
 
 def floor_app(answers):
@@ -117,8 +117,9 @@ def workers_of(pid):
 
 
 def cpu_seconds(pid):
-    fields = Path(f"/proc/{pid}/stat").read_text().rsplit(")", 1)[1].split()
-    return (int(fields[11]) + int(fields[12])) / os.sysconf("SC_CLK_TCK")
+    """Return the time that all threads of a process have spent on a processor."""
+    tasks = Path(f"/proc/{pid}/task").glob("*/schedstat")
+    return sum(int(task.read_text().split()[0]) for task in tasks) / 1e9
 
 
 def test_one_request_over_a_real_server_by_the_workers_cpu(answers):
@@ -139,17 +140,19 @@ def test_one_request_over_a_real_server_by_the_workers_cpu(answers):
             used = {"ours": [], "floor": []}
             for which in used:
                 ask(ports[which], paths[which], text, 50)
-            for _ in range(ROUNDS):
+            for _ in range(SHORT_ROUNDS):
                 for which, taken in used.items():
                     (worker,) = workers_of(servers[which].pid)
                     before = cpu_seconds(worker)
-                    ask(ports[which], paths[which], text, 1500)
-                    taken.append((cpu_seconds(worker) - before) / 1500)
+                    ask(ports[which], paths[which], text, SHORT_ROUND)
+                    taken.append((cpu_seconds(worker) - before) / SHORT_ROUND)
             ours, floor = np.median(used["ours"]), np.median(used["floor"])
+            # Pair by pair, since the machine's speed drifts between rounds.
+            ratio = float(np.median(np.array(used["ours"]) / np.array(used["floor"])))
             used_us = f"{ours * 1e6:.0f} us of a worker's CPU a request, floor {floor * 1e6:.0f}"
-            print(f"\n{kind}: {used_us}: x {ours / floor:.2f}")
+            print(f"\n{kind}: {used_us}: x {ratio:.2f}")
             # The issue's goal; the machine's noise on a median of alternating rounds is a few per cent.
-            assert ours / floor < 1.5
+            assert ratio < 1.5
     finally:
         for server in servers.values():
             server.terminate()
