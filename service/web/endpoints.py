@@ -3,6 +3,7 @@
 import hashlib
 from collections.abc import Callable, Mapping
 from dataclasses import dataclass
+from functools import cache
 from typing import Any, Final
 
 import numpy as np
@@ -120,9 +121,14 @@ def load(endpoint: Endpoint, stated: Any, limits: Limits) -> Loaded:
 def entity_tag(endpoint: Endpoint, loaded: Loaded, media_type: str) -> str:
     """Return a strong validator, known before anything is computed: the same request has the same answer."""
     digest = hashlib.sha256(loaded["canonical"])
-    identity = (service.VERSION, EDITION, np.__version__, endpoint.name, media_type)
-    digest.update("\0".join(identity).encode())
+    digest.update(_identity(endpoint.name, media_type))
     return digest.hexdigest()[:40]
+
+
+@cache
+def _identity(name: str, media_type: str) -> bytes:
+    """Return what an answer depends on beside its request."""
+    return "\0".join((service.VERSION, EDITION, np.__version__, name, media_type)).encode()
 
 
 def answer(endpoint: Endpoint, loaded: Loaded) -> bytes:
