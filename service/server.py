@@ -111,8 +111,8 @@ def _require_free(host: str, port: int) -> None:
         with socket.socket(family, socket.SOCK_STREAM) as probe:
             probe.setsockopt(socket.SOL_SOCKET, socket.SO_REUSEADDR, 1)
             probe.bind((host, port))
-    except OSError as error:
-        reason = error.strerror or str(error)
+    except (OSError, TypeError) as error:  # TypeError: a name that cannot be one of a host
+        reason = getattr(error, "strerror", None) or str(error)
         raise SettingsError(f"cannot listen on {address(host, port)}: {reason}") from None
 
 

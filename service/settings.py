@@ -91,7 +91,12 @@ _RANGES: Final = (
 )
 
 
+_MOST_DIGITS: Final = 20
+"""More than any setting needs, and fewer than Python refuses to read."""
+
+
 def _whole(name: str, text: str) -> int:
-    if text.strip().isascii() and text.strip().isdigit():
-        return int(text)
-    raise SettingsError(f"{name} is {text!r}; it must be a whole number")
+    digits = text.strip()
+    if digits.isascii() and digits.isdigit() and len(digits) <= _MOST_DIGITS:
+        return int(digits)
+    raise SettingsError(f"{name} is {text[:40]!r}; it must be a whole number")

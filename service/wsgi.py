@@ -2,6 +2,9 @@
 
 import os
 
+# Before NumPy is imported: threads of a numerical library would starve the other workers.
+os.environ.setdefault("OPENBLAS_NUM_THREADS", "1")
+
 from service.settings import Settings
 from service.web.app import create_app
 

@@ -31,6 +31,13 @@ def test_a_port_in_use_ends_with_one_line_and_status_2(capsys):
     assert "in use" in capsys.readouterr().err
 
 
+@pytest.mark.parametrize("host", ["no-such-host.invalid", "\u00e9" * 100])
+def test_a_host_that_is_none_ends_with_one_line_and_status_2(host, capsys):
+    assert main(["serve", "--host", host, "--port", "0"]) == 2
+    printed = capsys.readouterr().err
+    assert printed.startswith("fillmark: cannot listen on") and printed.count("\n") == 1
+
+
 def test_the_version_is_that_of_the_distribution(capsys):
     with pytest.raises(SystemExit) as ended:
         main(["--version"])

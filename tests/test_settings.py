@@ -36,6 +36,7 @@ def test_every_setting_has_its_variable(name):
         ("FILLMARK_PORT", "65536"),
         ("FILLMARK_PORT", ""),
         ("FILLMARK_PORT", "1e3"),
+        ("FILLMARK_PORT", "9" * 5000),  # more digits than Python turns into a number
         ("FILLMARK_WORKERS", "0"),
         ("FILLMARK_THREADS", "100000"),
         ("FILLMARK_HOST", ""),

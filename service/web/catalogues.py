@@ -17,7 +17,8 @@ from service.physics import constants
 from service.settings import Settings
 from service.web.endpoints import ENDPOINTS
 from service.web.negotiation import chosen_format
-from service.web.problems import KINDS, RequestError
+from service.web.problems import KINDS
+from service.web.query import check_parameters
 
 _CONSTANTS: Final = {
     "elementary_charge": (constants.ELEMENTARY_CHARGE, "C"),
@@ -76,9 +77,7 @@ def add_document(app: Flask, path: str, document: Mapping[str, Any]) -> None:
     tag = hashlib.sha256(body).hexdigest()[:40]
 
     def view() -> Response:
-        for name in request.args:
-            if name != "format":
-                raise RequestError("bad-request", f"the query parameter {name[:40]!r} is not known; there is format")
+        check_parameters(request, ("format",))
         made = Response(body, content_type=chosen_format(request))
         made.headers["ETag"] = f'"{tag}"'
         made.headers["Cache-Control"] = "public, max-age=3600"

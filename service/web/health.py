@@ -6,7 +6,7 @@ from typing import Final
 import orjson
 from flask import Flask, Response
 
-from service.web.problems import MEDIA_TYPE
+from service.web.problems import KINDS, problem
 
 DRAINING: Final = Event()
 """Set when the process was told to stop: what is in flight finishes, and nothing new should be sent."""
@@ -25,11 +25,7 @@ def _live() -> Response:
 def _ready() -> Response:
     if not DRAINING.is_set():
         return _said({"status": "ready"})
-    body = {"type": "about:blank", "title": "Draining", "status": 503, "detail": "this process is about to stop"}
-    answer = Response(orjson.dumps(body), status=503, content_type=MEDIA_TYPE)
-    answer.headers["Retry-After"] = "1"
-    answer.headers["Cache-Control"] = "no-store"
-    return answer
+    return problem(KINDS["draining"], "this process finishes what is in flight", headers={"Retry-After": "1"})
 
 
 def _said(body: dict[str, str]) -> Response:

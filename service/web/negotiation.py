@@ -2,7 +2,8 @@
 
 from typing import Final
 
-from flask import Request
+from flask import Request, Response
+from werkzeug.datastructures import MIMEAccept
 
 from service.web.problems import RequestError
 
@@ -15,6 +16,12 @@ COMING: Final = ("csv", "arrow", "svg", "png", "html")
 """Short names that the contract keeps for later versions."""
 
 _PLAIN: Final = frozenset(("", "*/*", JSON))
+
+
+class Untyped(Response):
+    """A response without a body, which has no media type either; Flask would call it HTML."""
+
+    default_mimetype = None
 
 
 def chosen_format(request: Request) -> str:
@@ -33,10 +40,24 @@ def chosen_format(request: Request) -> str:
         raise _not_acceptable(f"the format {short[:40]!r} {later}")
     if request.environ.get("HTTP_ACCEPT", "").strip() in _PLAIN:
         return JSON
-    best = request.accept_mimetypes.best_match(list(FORMATS.values()))
-    if best is None:
+    best = max(FORMATS.values(), key=lambda media: _quality(request.accept_mimetypes, media))
+    if _quality(request.accept_mimetypes, best) == 0:
         raise _not_acceptable("nothing that Accept names can be had")
     return best
+
+
+def _quality(accepted: MIMEAccept, media: str) -> float:
+    """Return how much a caller wants a media type: the quality of the most specific range that holds it.
+
+    Parameters such as `charset` do not tell our forms apart, and clients send them: they are passed over, where
+    werkzeug's own match asks that they be the same.
+    """
+    if not accepted:
+        return 1.0
+    specificity = {media: 2, f"{media.partition('/')[0]}/*": 1, "*/*": 0}
+    named = ((stated.partition(";")[0].strip().lower(), quality) for stated, quality in accepted)
+    found = [(specificity[name], quality) for name, quality in named if name in specificity]
+    return max(found)[1] if found else 0.0
 
 
 def _not_acceptable(reason: str) -> RequestError:

@@ -145,5 +145,5 @@ def _probe(name: str, summary: str, draining: bool = False) -> dict[str, Any]:
 
 def register(app: Flask, settings: Settings) -> None:
     """Serve the document."""
-    assert all(str(kind.status) in {*_PROBLEMS, "404", "405"} for kind in KINDS.values())
+    assert all(str(kind.status) in {*_PROBLEMS, "404", "405", "503"} for kind in KINDS.values())
     add_document(app, "/openapi.json", document(settings))

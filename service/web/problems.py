@@ -3,9 +3,10 @@
 from collections.abc import Iterable, Mapping
 from dataclasses import dataclass
 from typing import Any, Final
+from urllib.parse import quote
 
 import orjson
-from flask import Flask, Response, request
+from flask import Flask, Response, current_app, request
 from marshmallow import ValidationError
 from werkzeug.exceptions import HTTPException
 
@@ -16,6 +17,10 @@ from service.errors import Fault, SampleError, TooLarge, Unsupported
 MEDIA_TYPE: Final = "application/problem+json"
 _LONGEST: Final = 500
 """Characters of a detail or an instance; a problem repeats no megabyte that was sent."""
+
+
+_IN_A_PATH: Final = "/:@!$&'()*+,;=~"
+"""Beside letters and digits, what stands in the path of a URI as it is (RFC 3986, section 3.3)."""
 
 
 @dataclass(frozen=True, slots=True)
@@ -52,13 +57,14 @@ KINDS: Final = {
         Kind("out-of-range", 422, "A result is beyond the range of a double"),
         Kind("http-error", 400, "The request was refused"),
         Kind("internal", 500, "Something went wrong here"),
+        Kind("draining", 503, "This process is about to stop"),
     )
 }
 
 _BY_STATUS: Final = {
     kind.status: kind
     for kind in reversed(KINDS.values())
-    if kind.slug not in ("not-json", "http-error", "out-of-range", "too-large", "unsupported")
+    if kind.slug not in ("not-json", "http-error", "out-of-range", "too-large", "unsupported", "draining")
 }
 
 
@@ -71,7 +77,7 @@ def problem(
         "title": kind.title,
         "status": kind.status,
         "detail": _cut(detail),
-        "instance": _cut(request.path),
+        "instance": quote(_cut(request.path), safe=_IN_A_PATH),
     }
     listed = list(errors)
     if listed:
@@ -92,8 +98,8 @@ def _of_request(error: RequestError) -> Response:
 
 def _of_validation(error: ValidationError) -> Response:
     listed = faults(error.messages)
-    count = "one fault" if len(listed) == 1 else f"{len(listed)} faults"
-    return problem(KINDS["invalid-request"], f"{count}: {listed[0]['detail']}", listed)
+    first = f"{listed[0]['pointer']}: {listed[0]['detail']}"
+    return problem(KINDS["invalid-request"], first if len(listed) == 1 else f"{first}; errors lists the others", listed)
 
 
 def _of_sample(error: SampleError) -> Response:
@@ -136,6 +142,8 @@ _DETAILS: Final = {
 
 
 def _of_anything(error: Exception) -> Response:
+    # Flask logs only what no handler takes.
+    current_app.logger.error("%s %s failed", request.method, request.url_rule, exc_info=error)
     return problem(KINDS["internal"], "the request could not be answered; it has been logged")
 
 

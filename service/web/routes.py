@@ -9,10 +9,12 @@ from schemas.limits import Limits
 from service.settings import Settings
 from service.web.body import MEDIA_TYPE, stated_request
 from service.web.endpoints import ENDPOINTS, Endpoint, answer, entity_tag, load
-from service.web.negotiation import chosen_format
+from service.web.negotiation import Untyped, chosen_format
 from service.web.problems import RequestError
+from service.web.query import check_parameters
 
 PARAMETERS: Final = ("request", "format")
+METHODS: Final = ("GET", "HEAD", "OPTIONS", "POST", "QUERY")
 SAFE: Final = ("GET", "HEAD", "QUERY")
 CACHE_CONTROL: Final = "public, max-age=86400"
 """An answer depends on its request and this version alone, and its validator on both."""
@@ -23,7 +25,10 @@ def register(app: Flask, settings: Settings) -> None:
     limits = Limits(settings.max_samples, settings.max_energies, settings.max_curve_points)
     for endpoint in ENDPOINTS:
         view = _view(endpoint, limits, settings.max_body_bytes)
-        app.add_url_rule(f"/v1/{endpoint.name}", endpoint.name, view, methods=["GET", "POST", "QUERY"])
+        path = f"/v1/{endpoint.name}"
+        answered = [method for method in METHODS if method != "OPTIONS"]
+        app.add_url_rule(path, endpoint.name, view, methods=answered, provide_automatic_options=False)
+        app.add_url_rule(path, f"{endpoint.name}-options", _options, methods=["OPTIONS"])
 
 
 def _view(endpoint: Endpoint, limits: Limits, most_bytes: int) -> Callable[[], Response]:
@@ -31,7 +36,7 @@ def _view(endpoint: Endpoint, limits: Limits, most_bytes: int) -> Callable[[], R
         # The proxy looks its request up at every use: once is enough.
         current: Request = request._get_current_object()  # type: ignore[attr-defined]
         if current.query_string:
-            _check_parameters(current)
+            _check_query(current)
         media_type = chosen_format(current)
         loaded = load(endpoint, stated_request(current, most_bytes), limits)
         tag = entity_tag(endpoint, loaded, media_type)
@@ -45,10 +50,12 @@ def _view(endpoint: Endpoint, limits: Limits, most_bytes: int) -> Callable[[], R
     return view
 
 
-def _check_parameters(current: Request) -> None:
-    for name in current.args:
-        if name not in PARAMETERS:
-            detail = f"the query parameter {name[:40]!r} is not known; there is {', '.join(PARAMETERS)}"
-            raise RequestError("bad-request", detail)
+def _options() -> Response:
+    """Say what an address takes, QUERY among it."""
+    return Untyped(headers={"Allow": ", ".join(METHODS), "Accept-Query": MEDIA_TYPE})
+
+
+def _check_query(current: Request) -> None:
+    check_parameters(current, PARAMETERS)
     if "request" in current.args and current.method not in ("GET", "HEAD"):
         raise RequestError("bad-request", f"{current.method} takes the request in its body, not in the query")

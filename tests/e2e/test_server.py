@@ -22,6 +22,9 @@ REQUEST = json.dumps(
 ).encode()
 
 
+POST_JSON = b"POST /v1/fermi-level HTTP/1.1\r\nHost: x\r\nContent-Type: application/json\r\n"
+
+
 def start(**environ):
     """Start the service on a port of the system's choice and return it with the port that it says."""
     server = subprocess.Popen(
@@ -94,6 +97,8 @@ def test_a_body_in_chunks_is_read_whole_or_refused_and_never_cut_short(port):
         (b"G@T / HTTP/1.1\r\nHost: x\r\n\r\n", 400),
         (b"POST /v1/fermi-level HTTP/1.1\r\nHost: x\r\nContent-Length: -1\r\n\r\n", 400),
         (b"POST /v1/fermi-level HTTP/1.1\r\nHost: x\r\nContent-Length: 5\r\nTransfer-Encoding: chunked\r\n\r\n", 400),
+        (POST_JSON + b"Transfer-Encoding: chunked\r\n\r\nzz\r\n", 400),
+        (POST_JSON + b"Transfer-Encoding: chunked\r\n\r\n2\r\n{}\r\n-1\r\n", 400),
     ],
 )
 def test_what_the_server_itself_refuses_is_a_problem_too(port, raw, status):
@@ -107,6 +112,13 @@ def test_what_the_server_itself_refuses_is_a_problem_too(port, raw, status):
     assert b"application/problem+json" in head
     assert b"<html" not in body.lower()
     assert json.loads(body)["status"] == status
+
+
+def test_a_body_that_its_sender_breaks_off_is_refused(port):
+    with socket.create_connection(("127.0.0.1", port), timeout=20) as connection:
+        connection.sendall(POST_JSON + b"Content-Length: %d\r\n\r\n" % (len(REQUEST) + 1) + REQUEST)
+        connection.shutdown(socket.SHUT_WR)
+        assert connection.recv(65536).startswith(b"HTTP/1.1 400 ")
 
 
 def test_it_starts_and_answers_within_its_goal_and_stops_when_told():

@@ -47,6 +47,7 @@ def test_the_probes_tell_life_and_readiness(client):
         assert draining.status_code == 503
         assert draining.content_type == "application/problem+json"
         assert "Retry-After" in draining.headers
+        assert client.get(draining.json["type"]).json["status"] == 503
         assert client.get("/livez").status_code == 200
     finally:
         DRAINING.clear()

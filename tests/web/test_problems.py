@@ -4,6 +4,7 @@ import json
 
 import pytest
 
+from schemas.problems import MOST
 from service.settings import Settings
 from service.web.app import create_app
 from service.web.problems import KINDS
@@ -125,7 +126,7 @@ def test_a_charset_beside_the_type_is_taken(client, sample_request):
     assert answer.status_code == 200
 
 
-def test_an_error_of_ours_is_500_and_shows_nothing(monkeypatch, sample_request):
+def test_an_error_of_ours_is_500_shows_nothing_and_is_logged(monkeypatch, caplog, sample_request):
     broken = create_app()
     broken.config["PROPAGATE_EXCEPTIONS"] = False
 
@@ -136,6 +137,10 @@ def test_an_error_of_ours_is_500_and_shows_nothing(monkeypatch, sample_request):
     answer = broken.test_client().post("/v1/fermi-level", json=sample_request("bulk"))
     check(answer, 500, "internal")
     assert "secret" not in answer.text and "Traceback" not in answer.text
+    # What the caller may not see, the log has.
+    (logged,) = [record for record in caplog.records if record.levelname == "ERROR"]
+    assert logged.getMessage() == "POST /v1/fermi-level failed"
+    assert "secret" in str(logged.exc_info[1])
 
 
 def test_a_flood_of_faults_stays_small_and_counts_the_rest(client, sample_request):
@@ -143,7 +148,29 @@ def test_a_flood_of_faults_stays_small_and_counts_the_rest(client, sample_reques
         "/v1/fermi-level", json=sample_request("bulk", temperature={"value": [-1.0] * 100_000, "unit": "K"})
     )
     check(answer, 422, "invalid-request")
-    assert "more" in answer.text
+    assert "more" in answer.json["errors"][-1]["detail"]
+
+
+def test_a_flood_of_faults_in_every_object_stays_below_64_kb(client):
+    wide = {f"{chr(0x1F600) * 50}{number}": chr(0x1F600) * 50 for number in range(300)}
+    quantity = {"value": "x", "unit": chr(0x1F600) * 50, **wide}
+    body = {
+        **wide,
+        "carrier_density": quantity,
+        "temperature": quantity,
+        "geometry": {"kind": "box", "length": quantity, "width": quantity, "height": quantity, **wide},
+        "band": {"effective_mass": [quantity] * 3, "valleys": quantity, "relative_permittivity": quantity, **wide},
+        "output_units": wide,
+    }
+    answer = client.post("/v1/fermi-level", json=body)
+    check(answer, 422, "invalid-request")
+    assert len(answer.json["errors"]) == MOST
+
+
+def test_an_instance_is_a_uri_whatever_the_address_was(client):
+    answer = client.get("/v1/%C3%A9%20%22%3Cb%3E")
+    check(answer, 404, "not-found")
+    assert answer.json["instance"] == "/v1/%C3%A9%20%22%3Cb%3E"
 
 
 def test_a_megabyte_of_nonsense_is_not_repeated(client, sample_request):

@@ -131,8 +131,13 @@ def test_head_is_get_without_a_body(client, sample_request):
 
 def test_options_says_what_an_address_takes(client):
     answer = client.options("/v1/fermi-level")
-    assert answer.status_code == 200
-    assert {"GET", "POST", "QUERY", "HEAD", "OPTIONS"} <= set(answer.headers["Allow"].split(", "))
+    assert (answer.status_code, answer.data) == (200, b"")
+    assert {"GET", "POST", "QUERY", "HEAD", "OPTIONS"} == set(answer.headers["Allow"].split(", "))
+    # RFC 10008, Accept-Query: what a body of QUERY may be.
+    assert answer.headers["Accept-Query"] == "application/json"
+    # No body, no type: Flask would call it HTML.
+    assert answer.content_type is None
+    assert client.options("/v1/units").content_type is None
 
 
 @given(st.randoms(use_true_random=False))
