@@ -4,7 +4,7 @@ r"""Complete Fermi-Dirac integrals of the orders that one, two and three dimensi
 """
 
 import math
-from functools import cache, partial
+from functools import cache
 from typing import Final
 
 import numpy as np
@@ -18,6 +18,7 @@ HIGH: Final = 40.0 - 2.0**-46
 """The last double whose distance from `LOW`, as rounded, lies within the last cell: the series begin there."""
 
 _CELLS_PER_UNIT: Final = 32
+_LAST_CELL: Final = 80 * _CELLS_PER_UNIT - 1
 _CHUNK: Final = 1 << 14
 """Elements at a time, so that a chunk's buffers stay in the second-level cache."""
 
@@ -54,7 +55,7 @@ def fermi_dirac_integral(order: float, eta: Values) -> Values:
     Notes
     -----
     Whole orders up to zero in closed form. Others by a polynomial of degree 6 in each of 32 cells a unit of eta from
-    -40 to 40, by exp(eta) below and by Sommerfeld's series above. Against quadrature of 36 digits the relative
+    -40 to 40, by exp(eta) below and by Sommerfeld's series above. Against ball arithmetic of 60 digits the relative
     error is at most 1e-15 from eta = -700 to 1e8 (tests/physics/fermi_dirac/test_complete.py).
 
     References
@@ -82,7 +83,7 @@ def _integral_of_one(order: float, eta: float) -> float:
         return math.exp(eta) if eta > -745.0 else 0.0
     if eta >= HIGH:
         return _series_of_one(order, eta)
-    cell = int((eta - LOW) * _CELLS_PER_UNIT)
+    cell = min(int((eta - LOW) * _CELLS_PER_UNIT), _LAST_CELL)
     offset = eta - ((cell + 0.5) / _CELLS_PER_UNIT + LOW)
     a, b, c, d, e, f, g = cells(FILE, _name_of(order))[cell]
     return (((((a * offset + b) * offset + c) * offset + d) * offset + e) * offset + f) * offset + g
@@ -119,69 +120,35 @@ def _power_of_one(eta: float, exponent: float) -> float:
 
 
 def _integral_of_many(order: float, eta: FloatArray) -> FloatArray:
-    function = _CLOSED_FORMS.get(order)
-    if function is None:
-        function = partial(_by_range, order, table(FILE, _name_of(order)))
+    if order == 0.0:
+        return np.asarray(np.maximum(eta, 0.0) + np.log1p(np.exp(-np.abs(eta))))
+    if order in (-1.0, -2.0):
+        decay = np.exp(-np.abs(eta))
+        filled = np.where(eta >= 0.0, 1.0, decay) / (1.0 + decay)
+        return filled if order == -1.0 else decay / (1.0 + decay) ** 2
+    polynomials = table(FILE, _name_of(order))
     flat = np.ascontiguousarray(eta, dtype=np.float64).ravel()
     result = np.empty_like(flat)
     for start in range(0, flat.size, _CHUNK):
-        function(flat[start : start + _CHUNK], result[start : start + _CHUNK])
+        part = flat[start : start + _CHUNK]
+        _tabulated(order, polynomials, part, result[start : start + _CHUNK])
     return result.reshape(eta.shape)
 
 
-def _logarithms(eta: FloatArray, result: FloatArray) -> None:
-    """Fill `result` with F_0."""
-    np.log1p(_decay(eta, result), out=result)
-    result += np.maximum(eta, 0.0)
-
-
-def _occupations(eta: FloatArray, result: FloatArray) -> None:
-    """Fill `result` with F_-1."""
-    beyond = 1.0 + _decay(eta, result)
-    np.exp(np.minimum(eta, 0.0), out=result)
-    result /= beyond
-
-
-def _slopes(eta: FloatArray, result: FloatArray) -> None:
-    """Fill `result` with F_-2."""
-    beyond = 1.0 + _decay(eta, result)
-    result /= beyond
-    result /= beyond
-
-
-_CLOSED_FORMS: Final = {0.0: _logarithms, -1.0: _occupations, -2.0: _slopes}
-
-
-def _decay(eta: FloatArray, result: FloatArray) -> FloatArray:
-    """Fill `result` with exp(-abs(eta)), and return it."""
-    np.abs(eta, out=result)
-    np.negative(result, out=result)
-    return np.exp(result, out=result)
-
-
-def _by_range(order: float, polynomials: FloatArray, eta: FloatArray, result: FloatArray) -> None:
-    """Fill `result` with one chunk's integrals: all by the table, or each range by its own method."""
-    if eta.min() >= LOW and eta.max() < HIGH:
-        _tabulated(polynomials, eta, result)
-        return
-    below, above = eta < LOW, eta >= HIGH
-    # Rows by number: a mask of random arguments costs ten times as much.
-    if (rows := np.flatnonzero(below)).size:
-        result[rows] = np.exp(eta.take(rows))
-    if (rows := np.flatnonzero(above)).size:
-        result[rows] = _series_of_many(order, eta.take(rows))
-    if (rows := np.flatnonzero(~(below | above))).size:
-        inside = np.empty(rows.size)
-        _tabulated(polynomials, eta.take(rows), inside)
-        result[rows] = inside
-
-
-def _tabulated(polynomials: FloatArray, eta: FloatArray, result: FloatArray) -> None:
-    """Fill `result` with the integrals from `LOW` to `HIGH`."""
-    cell = ((eta - LOW) * _CELLS_PER_UNIT).astype(np.intp)
+def _tabulated(order: float, polynomials: FloatArray, eta: FloatArray, result: FloatArray) -> None:
+    """Fill `result` with one chunk's integrals: the table for all, then the two ends where there are any."""
+    lowest, highest = eta.min(), eta.max()
+    inside = eta if LOW <= lowest and highest < HIGH else np.clip(eta, LOW, HIGH)
+    cell = np.minimum(((inside - LOW) * _CELLS_PER_UNIT).astype(np.intp), _LAST_CELL)
     # The centre is formed exactly and then subtracted: the other order costs 4e-15.
-    offset = eta - ((cell + 0.5) / _CELLS_PER_UNIT + LOW)
+    offset = inside - ((cell + 0.5) / _CELLS_PER_UNIT + LOW)
     horner(polynomials, cell, offset, result)
+    if lowest < LOW:
+        below = eta < LOW
+        result[below] = np.exp(eta[below])
+    if highest >= HIGH:
+        above = eta >= HIGH
+        result[above] = _series_of_many(order, eta[above])
 
 
 def _series_of_many(order: float, eta: FloatArray) -> FloatArray:

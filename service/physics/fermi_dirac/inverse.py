@@ -1,11 +1,10 @@
 r"""The chemical potential from a density: the inverse of the Fermi-Dirac integrals of order 1/2, 0 and -1/2."""
 
 import math
-from functools import cache, partial
+from functools import cache
 from typing import Any, Final
 
 import numpy as np
-from numpy.typing import NDArray
 
 from service.physics.fermi_dirac.complete import FILE
 from service.physics.tabulated import cells, horner, table
@@ -110,52 +109,33 @@ def _polished(root: Any, cube: Any) -> Any:
 
 
 def _inverse_of_many(order: float, value: FloatArray) -> FloatArray:
-    if order != 0.0 and order not in _LAST_OCTAVE:
+    if order == 0.0:
+        return np.asarray(value + np.log(-np.expm1(-value)))
+    if order not in _LAST_OCTAVE:
         raise ValueError(f"no inverse of order {order}; on offer: {ORDERS}")
-    function = _closed_form if order == 0.0 else partial(_by_range, order, table(FILE, _NAMES[order]))
     flat = np.ascontiguousarray(value, dtype=np.float64).ravel()
     result = np.empty_like(flat)
     for start in range(0, flat.size, _CHUNK):
-        function(flat[start : start + _CHUNK], result[start : start + _CHUNK])
+        _tabulated(order, flat[start : start + _CHUNK], result[start : start + _CHUNK])
     return result.reshape(value.shape)
 
 
-def _closed_form(value: FloatArray, result: FloatArray) -> None:
-    """Fill `result` with the inverses of F_0."""
-    np.negative(value, out=result)
-    np.expm1(result, out=result)
-    np.negative(result, out=result)
-    np.log(result, out=result)
-    result += value
-
-
-def _by_range(order: float, polynomials: FloatArray, value: FloatArray, result: FloatArray) -> None:
-    """Fill `result` with one chunk's inverses: all by the table, or each range by its own method."""
-    cell = (value.view(np.int64) >> (_SIGNIFICAND_BITS - _CELL_BITS)) - ((_ONE + _FIRST_OCTAVE) << _CELL_BITS)
-    cells_of_table = polynomials.shape[1]
-    if cell.min() >= 0 and cell.max() < cells_of_table:
-        _tabulated(polynomials, cell, value, result)
-        return
-    below, above = cell < 0, cell >= cells_of_table
-    # Rows by number: a mask of random arguments costs ten times as much.
-    if (rows := np.flatnonzero(below)).size:
-        small = value.take(rows)
-        result[rows] = np.log(small) + small * math.pow(2.0, -(order + 1.0))
-    if (rows := np.flatnonzero(above)).size:
-        result[rows] = _degenerate_of_many(order, value.take(rows))
-    if (rows := np.flatnonzero(~(below | above))).size:
-        inside = np.empty(rows.size)
-        _tabulated(polynomials, cell.take(rows), value.take(rows), inside)
-        result[rows] = inside
-
-
-def _tabulated(polynomials: FloatArray, cell: NDArray[np.int64], value: FloatArray, result: FloatArray) -> None:
-    """Fill `result` with the inverses that lie in the table."""
-    fraction = value.view(np.int64) & ((1 << _SIGNIFICAND_BITS) - 1)
-    significand = (fraction | (_ONE << _SIGNIFICAND_BITS)).view(np.float64)
+def _tabulated(order: float, value: FloatArray, result: FloatArray) -> None:
+    """Fill `result` with one chunk's inverses: the table for all, then the two ends where there are any."""
+    polynomials = table(FILE, _NAMES[order])
+    bits = value.view(np.int64)
+    cell = (bits >> (_SIGNIFICAND_BITS - _CELL_BITS)) - ((_ONE + _FIRST_OCTAVE) << _CELL_BITS)
+    significand = ((bits & ((1 << _SIGNIFICAND_BITS) - 1)) | (_ONE << _SIGNIFICAND_BITS)).view(np.float64)
     part = cell & (_CELLS_PER_OCTAVE - 1)
     offset = significand - (1.0 + (part + 0.5) / _CELLS_PER_OCTAVE)
     horner(polynomials, cell, offset, result)
+    if cell.min() < 0:
+        below = cell < 0
+        small = value[below]
+        result[below] = np.log(small) + small * math.pow(2.0, -(order + 1.0))
+    if cell.max() >= polynomials.shape[1]:
+        above = cell >= polynomials.shape[1]
+        result[above] = _degenerate_of_many(order, value[above])
 
 
 def _degenerate_of_many(order: float, value: FloatArray) -> FloatArray:

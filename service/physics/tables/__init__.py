@@ -8,6 +8,3 @@ GAUSSIAN_CHECKSUM = "96f17a64c4e1ee125252eccddaa95300b24a0b7549aa14cfb9a9b3db1e3
 
 BESSEL_ZEROS_CHECKSUM = "2d31d1b3fcfbbd0f10270c3c439120447bd1bde57e89626addda6aafcf00cfc2"
 """The same of ``bessel_zeros.npz``, as ``make_bessel_zeros`` prints it."""
-
-KANE_CHECKSUM = "037dc577fad4c17178b7ed533ba90c84ca560eb6e8a2ac0b656478bf9e152274"
-"""The same of ``kane.npz``, as ``make_kane`` prints it."""
